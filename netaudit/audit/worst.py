@@ -1,0 +1,226 @@
+"""The worst case of audited quantities over all ranges and tolerances.
+
+Every quantity is a function of a solved board (a batch of them) that is to be maximised, usually a ratio of stress to
+limit.  Sensitivities at the nominal point send each quantity to a vertex of the box; the vertices are solved as one
+batch, sensitivities are looked at again there, and where one points back inside (a power that peaks within a range) the
+extreme is found by a bounded search along that value.  Every vertex solved serves every quantity.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Mapping, Sequence
+from dataclasses import dataclass
+from itertools import product
+from typing import Literal
+
+import numpy as np
+
+from netaudit.devices.base import Array
+from netaudit.solve.sensitivity import Variable, assign, chunks, moved, steps, variables
+from netaudit.solve.settle import Job, Solver
+from netaudit.solve.solved import Solved
+
+Proof = Literal["proven", "bounded", "checked"]
+Objective = Callable[[Solved], Array]
+
+#: a gain below this share of the value is rounding, not an influence
+_NEGLIGIBLE = 1e-12
+#: with at most this many values all vertices are solved besides those that sensitivities point to
+_ALL_VERTICES = 6
+_ROUNDS = 4
+_ZOOM = 9
+
+
+@dataclass(frozen=True)
+class Extreme:
+    """The largest value of a quantity, the board at which it occurs, and the corner in the user's values."""
+
+    value: float
+    board: Solved
+    corner: Mapping[str, float]
+    proof: Proof
+    bound: float | None = None
+
+
+class Explorer:
+    """Explores the box of one solved operating point (``nominal``: a batch of one)."""
+
+    def __init__(self, solver: Solver, nominal: Solved) -> None:
+        self.solver = solver
+        self.spans: tuple[Variable, ...] = variables(solver)
+        self.low = np.array([v.quantity.low for v in self.spans])
+        self.high = np.array([v.quantity.high for v in self.spans])
+        self.middle = np.array([v.quantity.nominal for v in self.spans])
+        self.rows: list[Array] = [self.middle]
+        self.boards: list[Solved] = [nominal]
+        self.member: list[tuple[int, int]] = [(0, 0)]
+        self.known: dict[bytes, int] = {self.middle.tobytes(): 0}
+        self._columns: list[Array] = []
+        self._slopes: dict[int, Array] = {}
+        #: corners at which no operating point was found
+        self.failures: list[dict[str, float]] = []
+
+    def extremes(self, objectives: Sequence[Objective]) -> list[Extreme]:
+        """The largest value of each objective over the box."""
+        if not objectives:
+            return []
+        self._columns, self._slopes = [], {}
+        if not self.spans:
+            values = self._table(objectives)
+            return [Extreme(float(values[0, k]), self._board(0), {}, "proven") for k in range(len(objectives))]
+        if len(self.spans) <= _ALL_VERTICES:
+            self._solve([np.array(v) for v in product(*zip(self.low, self.high, strict=True))])
+        self._climb(objectives)
+        table = self._table(objectives)
+        best = np.nanargmax(table, axis=0)
+        best = self._inside(objectives, best)
+        table = self._table(objectives)
+        gradients = self._gradients(objectives, sorted(set(best.tolist())))
+        return [self._extreme(table, int(best[k]), k, gradients) for k in range(len(objectives))]
+
+    def _extreme(self, table: Array, row: int, k: int, gradients: dict[int, Array]) -> Extreme:
+        corner = {
+            v.key: float(self.rows[row][c])
+            for c, v in enumerate(self.spans)
+            if self.rows[row][c] != self.middle[c] or gradients[row][k, c] != 0.0
+        }
+        return Extreme(float(table[row, k]), self._board(row), corner, "checked")
+
+    def _climb(self, objectives: Sequence[Objective]) -> None:
+        """Rounds of: best row so far, sensitivities there, the vertex they point to."""
+        looked: set[tuple[int, int]] = set()
+        for _ in range(_ROUNDS):
+            table = self._table(objectives)
+            best = np.nanargmax(table, axis=0)
+            todo = [k for k in range(len(objectives)) if (int(best[k]), k) not in looked]
+            if not todo:
+                return
+            looked |= {(int(best[k]), k) for k in todo}
+            gradients = self._gradients(objectives, sorted({int(best[k]) for k in todo}))
+            self._solve([self._vertex(gradients[int(best[k])][k], self.rows[int(best[k])]) for k in todo])
+
+    def _vertex(self, gradient: Array, row: Array) -> Array:
+        return np.where(gradient > 0, self.high, np.where(gradient < 0, self.low, row))
+
+    def _inside(self, objectives: Sequence[Objective], best: np.ndarray) -> np.ndarray:
+        """Bounded searches along values whose sensitivity at the best row points back into the box."""
+        best = best.copy()
+        for _ in range(3):
+            gradients = self._gradients(objectives, sorted(set(best.tolist())))
+            todo = [(k, c) for k in range(len(objectives)) for c in self._inward(gradients[int(best[k])][k], int(best[k]))]
+            if not todo:
+                return best
+            before = self._table(objectives)[best, np.arange(len(objectives))]
+            for column in sorted({c for _, c in todo}):
+                self._zoom(objectives, best, [k for k, c in todo if c == column], column)
+            after = self._table(objectives)[best, np.arange(len(objectives))]
+            if not (after > before * (1 + 1e-9 * np.sign(before))).any():
+                return best
+        return best
+
+    def _inward(self, gradient: Array, row: int) -> list[int]:
+        values = self.rows[row]
+        up = (gradient > 0) & (values < self.high)
+        down = (gradient < 0) & (values > self.low)
+        return [int(c) for c in np.flatnonzero(up | down)]
+
+    def _zoom(self, objectives: Sequence[Objective], best: np.ndarray, ks: Sequence[int], column: int) -> None:
+        """Successively finer grids along one value for several objectives; updates ``best`` where something is larger."""
+        left = {k: self.low[column] for k in ks}
+        right = {k: self.high[column] for k in ks}
+        for _ in range(_ZOOM):
+            grids = {k: np.linspace(left[k], right[k], 9) for k in ks}
+            wanted = {k: [self._with(int(best[k]), column, g) for g in grids[k]] for k in ks}
+            self._solve([row for k in ks for row in wanted[k]])
+            table = self._table(objectives)
+            for k in ks:
+                rows = [self.known[r.tobytes()] for r in wanted[k] if r.tobytes() in self.known]
+                top = max(rows, key=lambda r, k=k: table[r, k])  # type: ignore[misc]
+                if table[top, k] >= table[best[k], k]:
+                    best[k] = top
+                width = (right[k] - left[k]) / 8
+                at = self.rows[int(best[k])][column]
+                left[k], right[k] = max(self.low[column], at - width), min(self.high[column], at + width)
+
+    def _with(self, row: int, column: int, value: float) -> Array:
+        out = self.rows[row].copy()
+        out[column] = value
+        return out
+
+    def _board(self, row: int) -> Solved:
+        batch, member = self.member[row]
+        return self.boards[batch].pick(member)
+
+    def _table(self, objectives: Sequence[Objective]) -> Array:
+        """Every objective on every row solved so far: shape (rows, objectives)."""
+        while len(self._columns) < len(self.boards):
+            board = self.boards[len(self._columns)]
+            count = board.x.shape[0]
+            self._columns.append(np.stack([np.broadcast_to(f(board), (count,)) for f in objectives], axis=-1))
+        picked = [self._columns[b][m] for b, m in self.member]
+        return np.array(picked)
+
+    def _solve(self, wanted: Sequence[Array]) -> None:
+        """Solves the rows not solved yet, as batches started from the nominal point."""
+        fresh = {row.tobytes(): row for row in wanted if row.tobytes() not in self.known}
+        rows = list(fresh.values())
+        size = chunks(self.solver, len(rows)) if rows else 1
+        for start in range(0, len(rows), size):
+            self._solve_batch(np.array(rows[start : start + size]))
+
+    def _solve_batch(self, values: Array) -> None:
+        nominal = self.boards[0]
+        overrides, air = assign(self.spans, values, self.solver.system.circuit.ambient.nominal)
+        count = len(values)
+        rise = nominal.temperature - np.asarray(nominal.ambient, dtype=float).reshape(-1, 1)
+        ambient = np.broadcast_to(np.asarray(air, dtype=float), (count,))
+        job = Job(overrides, ambient, count, np.repeat(nominal.u, count, axis=0), rise + ambient[:, None])
+        settled = self.solver.settle(job)
+        batch = len(self.boards)
+        self.boards.append(settled.solved)
+        for member, row in enumerate(values):
+            if settled.converged[member]:
+                self.known[row.tobytes()] = len(self.rows)
+                self.rows.append(row)
+                self.member.append((batch, member))
+            else:
+                self.failures.append({v.key: float(row[c]) for c, v in enumerate(self.spans)})
+
+    def _gradients(self, objectives: Sequence[Objective], rows: Sequence[int]) -> dict[int, Array]:
+        """Signed influences at some rows, {row: (objectives, variables)}: the change of each objective for a small
+        positive step of each value, zero where it is rounding."""
+        todo = [r for r in rows if r not in self._slopes]
+        columns = list(range(len(self.spans)))
+        size = max(1, chunks(self.solver, len(todo) * len(columns)) // max(len(columns), 1)) if todo else 1
+        for start in range(0, len(todo), size):
+            part = todo[start : start + size]
+            self._gradient_batch(objectives, part, columns)
+        return {r: self._slopes[r] for r in rows}
+
+    def _gradient_batch(self, objectives: Sequence[Objective], part: Sequence[int], columns: Sequence[int]) -> None:
+        values = np.array([self.rows[r] for r in part])
+        base = self._gathered(part)
+        near = moved(self.solver, base, self.spans, values, columns)
+        shape = (len(part), len(columns))
+        sign = np.sign(steps(self.spans, values)[:, list(columns)])
+        table = self._table(objectives)
+        for r in part:
+            self._slopes[r] = np.zeros((len(objectives), len(columns)))
+        for k, f in enumerate(objectives):
+            there = np.broadcast_to(f(near), (shape[0] * shape[1],)).reshape(shape)
+            here = np.array([table[r, k] for r in part])[:, None]
+            change = np.where(np.isfinite(there), there - here, 0.0)
+            change[np.abs(change) <= _NEGLIGIBLE * np.abs(here)] = 0.0
+            for i, r in enumerate(part):
+                self._slopes[r][k] = change[i] * sign[i]
+
+    def _gathered(self, rows: Sequence[int]) -> Solved:
+        """Some rows as one batch."""
+        singles = [self._board(r) for r in rows]
+        values = np.array([self.rows[r] for r in rows])
+        overrides, air = assign(self.spans, values, self.solver.system.circuit.ambient.nominal)
+        ambient = np.broadcast_to(np.asarray(air, dtype=float), (len(rows),))
+        temperature = np.array([s.temperature for s in singles])
+        num = self.solver.system.numbers(overrides, temperature, ambient, (len(rows),))
+        x, u = np.array([s.x for s in singles]), np.array([s.u for s in singles])
+        return Solved(self.solver.system, num, x, u, temperature, ambient, overrides)

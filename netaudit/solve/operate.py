@@ -1,0 +1,71 @@
+"""Solving one mode: its operating points with certificates, or a sentence that says why there is none."""
+
+from __future__ import annotations
+
+from netaudit.circuit.circuit import Circuit
+from netaudit.solve.certificate import certify
+from netaudit.solve.point import ModeResult, Point
+from netaudit.solve.settle import Settled, Solver
+from netaudit.solve.solved import Solved
+from netaudit.solve.structure import unique_by_structure
+from netaudit.solve.system import System
+
+
+def operate(circuit: Circuit) -> ModeResult:
+    """Every operating point of a mode at nominal values.
+
+    A point is reported only with its certificate (Kirchhoff's law over the nets, Tellegen's theorem); without it, or
+    when every remedy failed, the result has no points and says what was tried.
+    """
+    return Operation(circuit).result()
+
+
+class Operation:
+    """A mode being solved; keeps its Solver for what comes after (corners, samples, load lines)."""
+
+    def __init__(self, circuit: Circuit) -> None:
+        self.circuit = circuit
+        self.system = System(circuit)
+        self.solver = Solver(self.system)
+
+    def result(self) -> ModeResult:
+        settled = self.solver.settle(self.solver.job())
+        proven, because = unique_by_structure(self.system)
+        if not settled.converged[0]:
+            return self._nothing(settled, because)
+        solved = settled.solved.pick(0)
+        certificate = certify(solved)
+        if not certificate.holds:
+            failure = (
+                f"the iteration ended in a point whose pin currents do not sum to zero: "
+                f"{certificate.residual_current:.3g} A are left over on net {certificate.worst_net}"
+            )
+            return ModeResult(self.circuit, (), "searched", because, failure, certificate.worst_net)
+        point = make_point(solved, settled.method[0], int(settled.iterations[0]), proven)
+        return ModeResult(self.circuit, (point,), "proven" if proven else "searched", because)
+
+    def _nothing(self, settled: Settled, because: str) -> ModeResult:
+        certificate = certify(settled.solved.pick(0))
+        failure = (
+            f"no operating point was found; tried {settled.method[0]} ({int(settled.iterations[0])} steps); "
+            f"the largest unbalanced current was {certificate.residual_current:.3g} A on net {certificate.worst_net}"
+        )
+        return ModeResult(self.circuit, (), "searched", because, failure, certificate.worst_net)
+
+
+def make_point(solved: Solved, method: str, iterations: int, passive: bool) -> Point:
+    """The reported point; ``passive``: increasing branches and passive linear parts only, which settles stability."""
+    system = solved.system
+    certificate = certify(solved)
+    nets = {net: float(solved.net(net)) for net in system.circuit.nets if net in system.net_of}
+    temperatures = {d.name: float(solved.temperature[..., k]) for k, d in enumerate(system.devices)}
+    stable: bool | None = True if passive else None
+    because = (
+        "all branches are strictly increasing and the rest is passive: any capacitances make it decay"
+        if passive
+        else "not decided"
+    )
+    return Point(
+        nets, temperatures, solved.view, method, iterations,
+        certificate.residual_current, certificate.power_imbalance, stable, because,
+    )  # fmt: skip

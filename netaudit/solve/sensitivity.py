@@ -1,0 +1,122 @@
+"""First-order changes of a solved board for small changes of its values, without a single derivative written by hand.
+
+For a value p the change of every balance at fixed x is measured by stamping once more, dF = F(x; p + h) - F(x; p); the
+circuit answers with dx = -J^-1 dF and, where parts heat, with dT = (I - R K)^-1 R dP.  The board moved by (dx, dT) is
+handed to whoever wants to know what that does to a stress: any function of a solved batch can be differentiated so.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+import numpy as np
+
+from netaudit.devices.base import Array, Value
+from netaudit.quantities.quantity import Quantity
+from netaudit.solve.heat import loop_gain, power_change, respond, warming
+from netaudit.solve.linear import Dense
+from netaudit.solve.settle import Solver
+from netaudit.solve.solved import Solved
+
+#: step of a value as a share of its span: small enough to be local, large against rounding
+SHARE = 1e-4
+#: numbers held at once while many members are moved
+_BUDGET = 4_000_000
+
+
+@dataclass(frozen=True)
+class Variable:
+    """A value that varies: ``device`` and ``name`` of the value (both empty for the ambient), its span, and the name
+    under which corners show it (``R1``, ``D2.V_Z``, ``ambient``)."""
+
+    key: str
+    device: str
+    name: str
+    quantity: Quantity
+
+
+def variables(solver: Solver) -> tuple[Variable, ...]:
+    """Everything with a span: device values in the order of the netlist, the ambient last."""
+    found = [
+        Variable(d.name if name == "value" else f"{d.name}.{name}", d.name, name, q)
+        for d in solver.system.devices
+        for name, q in d.values.items()
+        if q.varies
+    ]
+    ambient = solver.system.circuit.ambient
+    if ambient.varies:
+        found.append(Variable("ambient", "", "", ambient))
+    return tuple(found)
+
+
+def assign(
+    spans: Sequence[Variable], values: Array, ambient: float
+) -> tuple[dict[tuple[str, str], Value], Value]:
+    """Overrides and ambient for rows of values (members, variables); ambient stays where no variable is the ambient."""
+    overrides: dict[tuple[str, str], Value] = {}
+    air: Value = ambient
+    for k, variable in enumerate(spans):
+        if variable.device:
+            overrides[(variable.device, variable.name)] = values[..., k]
+        else:
+            air = values[..., k]
+    return overrides, air
+
+
+def moved(solver: Solver, solved: Solved, spans: Sequence[Variable], values: Array, columns: Sequence[int]) -> Solved:
+    """The boards of ``solved`` (one batch axis of V) each moved a little along each of the given variables.
+
+    ``values``: (V, variables) as solved.  Returns a batch of V * len(columns) members in that order (variable fastest);
+    member (v, k) differs from v by SHARE of the span of variable columns[k], inwards where it stands at its high end.
+    """
+    count, width = values.shape[0], len(columns)
+    step = steps(spans, values)[:, columns]
+    grid = np.repeat(values, width, axis=0)
+    member = np.arange(count * width)
+    grid[member, np.tile(np.asarray(columns, dtype=np.intp), count)] += step.reshape(-1)
+    overrides, air = assign(spans, grid, solver.system.circuit.ambient.nominal)
+    air_rows = np.broadcast_to(np.asarray(air, dtype=float), (count * width,))
+    air_step = (air_rows - np.repeat(np.broadcast_to(np.asarray(solved.ambient), (count,)), width))[:, None]
+    temperature = np.repeat(solved.temperature, width, axis=0) + air_step
+    num = solver.system.numbers(overrides, temperature, air_rows, (count * width,))
+    u = np.repeat(solved.u, width, axis=0)
+    x = np.repeat(solved.x, width, axis=0)
+    sums = solver.system.handle_sums(num, x, num.branches.value(u)[0])
+    d = sums.reshape(count, width, -1) - solved.handle_sums[:, None, :]
+    dx = respond(solver.system, solved, d, solver.linear)
+    if solver.heat.any:
+        dx, dt = _with_heat(solver, solved, d, dx)
+        temperature[:, solver.heat.devices] += dt.reshape(count * width, -1)
+        num = solver.system.numbers(overrides, temperature, air_rows, (count * width,))
+    x = x + dx.reshape(count * width, -1)
+    return Solved(solver.system, num, x, solver.system.sense(num, x), temperature, air_rows, overrides)
+
+
+def steps(spans: Sequence[Variable], values: Array) -> Array:
+    """Signed steps (V, variables): SHARE of each span, towards its inside."""
+    low = np.array([v.quantity.low for v in spans])
+    high = np.array([v.quantity.high for v in spans])
+    size = SHARE * (high - low)
+    return np.where(values + size > high, -size, size)
+
+
+def _with_heat(solver: Solver, solved: Solved, d: Array, dx: Array) -> tuple[Array, Array]:
+    """dx and dT with the heated temperatures answering too; d, dx hold the change at fixed temperatures."""
+    heat = solver.heat
+    warm = warming(solver.system, heat, solved, solver.linear)
+    dp = power_change(solver.system, heat, solved, d, dx)
+    rise = dp @ heat.resistance.T
+    gain, _ = loop_gain(heat, warm.slopes)
+    inverse = np.linalg.inv(np.eye(len(heat.devices)) - gain)
+    dt = rise @ np.swapaxes(inverse, -1, -2)
+    return dx + dt @ warm.dx, dt
+
+
+def chunks(solver: Solver, members: int) -> int:
+    """How many members may be moved at once within the memory budget."""
+    system = solver.system
+    width = len(system.g_row) + len(system.s_row) + len(system.a_row) + system.n
+    if isinstance(solver.linear, Dense):
+        width += system.n * (system.n + system.m)
+    return max(1, min(members, _BUDGET // max(width, 1)))

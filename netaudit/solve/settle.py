@@ -1,0 +1,121 @@
+"""One circuit or a batch of value sets, settled: electrical Newton inside, temperatures outside."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from netaudit.devices.base import Array, Value
+from netaudit.solve.heat import Heat, heat_paths, loop_gain, warming
+from netaudit.solve.ladder import climb
+from netaudit.solve.linear import Linear, choose
+from netaudit.solve.newton import newton
+from netaudit.solve.solved import Solved
+from netaudit.solve.system import Numbers, Overrides, System
+
+#: temperatures settled to this, kelvin
+TEMPERATURE_STEP = 1e-7
+#: beyond these a junction law has no meaning; iterates are kept between them
+COLDEST, HOTTEST = -270.0, 3000.0
+
+
+@dataclass(frozen=True)
+class Job:
+    """What is to be solved: values that differ from nominal (one batch axis), ambient in degC, and a start.
+
+    ``share`` scales every thermal resistance (1 is the board as it is).
+    """
+
+    overrides: Overrides
+    ambient: Value
+    count: int
+    u0: Array
+    t0: Array
+    share: float = 1.0
+
+
+@dataclass(frozen=True)
+class Settled:
+    """Solutions of a Job: which converged, by which method and in how many steps, and the largest loop gain."""
+
+    solved: Solved
+    converged: np.ndarray
+    method: tuple[str, ...]
+    iterations: np.ndarray
+    gain: Array
+    gain_matrix: Array | None = None
+
+
+class Solver:
+    """A system with its heat paths and linear algebra, ready to settle jobs."""
+
+    def __init__(self, system: System) -> None:
+        self.system = system
+        self.heat: Heat = heat_paths(system, system.circuit)
+        self.linear: Linear = choose(system)
+
+    def job(self, overrides: Overrides | None = None, ambient: Value | None = None, count: int = 1) -> Job:
+        """A job that starts from rest: all branch values zero, everything at ambient."""
+        air: Value = self.system.circuit.ambient.nominal if ambient is None else ambient
+        t0 = np.broadcast_to(np.asarray(air, dtype=float).reshape(-1, 1), (count, len(self.system.devices))).copy()
+        return Job(overrides or {}, air, count, np.zeros((count, self.system.m)), t0)
+
+    def settle(self, job: Job, remedies: bool = True) -> Settled:
+        """Electrical and thermal unknowns together; without ``remedies`` members that Newton misses stay unconverged."""
+        temperature, u = job.t0.copy(), job.u0.copy()
+        total = np.zeros(job.count, dtype=int)
+        methods = ["newton"] * job.count
+        gain = np.zeros(job.count)
+        matrix: Array | None = None
+        for _ in range(40):
+            num = self.system.numbers(job.overrides, temperature, job.ambient, (job.count,))
+            x, u, good, steps, named = self._electrical(num, u, remedies)
+            total += steps
+            methods = [n if n != "newton" else m for n, m in zip(named, methods, strict=True)]
+            solved = Solved(self.system, num, x, u, temperature, job.ambient, job.overrides)
+            if not self.heat.any or not good.any():
+                return Settled(solved, good, tuple(methods), total, gain, matrix)
+            step, gain, matrix = self._thermal_step(solved, job)
+            moving = good & ~(np.abs(step).max(axis=-1) < TEMPERATURE_STEP)
+            if not moving.any():
+                return Settled(solved, good, tuple(methods), total, gain, matrix)
+            moved = temperature[:, self.heat.devices] + np.where(good[:, None] & np.isfinite(step), step, 0.0)
+            temperature = temperature.copy()
+            temperature[:, self.heat.devices] = np.clip(moved, COLDEST, HOTTEST)
+        return Settled(solved, good & ~moving, tuple(methods), total, gain, matrix)
+
+    def _electrical(
+        self, num: Numbers, u: Array, remedies: bool
+    ) -> tuple[Array, Array, np.ndarray, np.ndarray, list[str]]:
+        result = newton(self.system, num, u, self.linear)
+        x, u, good = result.x.copy(), result.u.copy(), result.converged.copy()
+        steps = result.iterations.copy()
+        named = ["newton"] * len(u)
+        for k in np.flatnonzero(~good) if remedies else ():
+            one = num.take(np.array([k])) if num.batch else num
+            found = climb(self.system, one, np.zeros(self.system.m), self.linear)
+            steps[k] += found.iterations
+            named[k] = found.method
+            if found.x is not None:
+                x[k], u[k], good[k] = found.x, found.u, True
+        return x, u, good, steps, named
+
+    def _thermal_step(self, solved: Solved, job: Job) -> tuple[Array, Array, Array]:
+        """The Newton step of the heated temperatures (batch, h), the largest loop gain and the gain matrix."""
+        heat = self.heat
+        resistance = job.share * heat.resistance
+        power = solved.powers[:, heat.devices]
+        air = np.asarray(job.ambient, dtype=float).reshape(-1, 1)
+        rest = air + power @ resistance.T - solved.temperature[:, heat.devices]
+        slopes = warming(self.system, heat, solved, self.linear).slopes
+        slopes = np.where(np.isfinite(slopes), slopes, 0.0)
+        gain, largest = loop_gain(heat, slopes, job.share)
+        lhs = np.eye(len(heat.devices)) - gain
+        with np.errstate(all="ignore"):
+            try:
+                step = np.linalg.solve(lhs, rest[..., None])[..., 0]
+            except np.linalg.LinAlgError:
+                step = rest
+        # a junction does not warm by hundreds of kelvin in one honest step: keep the laws where they are smooth
+        return np.clip(step, -60.0, 60.0), largest, gain
