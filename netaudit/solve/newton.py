@@ -23,6 +23,8 @@ STEP_RELATIVE = 1e-9
 #: KCL residual that counts as rounding: relative to the currents that meet, and to the terms that were summed
 CURRENT_RELATIVE = 1e-9
 TERM_RELATIVE = 256 * np.finfo(float).eps
+#: steps after which a balance at its rounding floor counts, whatever the steps of the voltages
+_PATIENCE = 8
 #: beyond this no part of a board carries the current: the iterate has no physical meaning
 CURRENT_LIMIT = 1e12
 
@@ -70,6 +72,8 @@ def newton(system: System, num: Numbers, u0: Array, linear: Linear, effort: Effo
         now = u[active]
         with np.errstate(all="ignore"):
             x_new, new, at_rest = _step(system, part, now, linear, turn, effort)
+            if turn >= _PATIENCE and effort.anchor is None:
+                at_rest |= _balanced(system, part, x_new)
         iterations[active] += 1
         fine = np.isfinite(x_new).all(axis=-1) & np.isfinite(new).all(axis=-1)
         x[active], u[active] = x_new, new
@@ -107,6 +111,16 @@ def _step(
     return x, new, at_rest
 
 
+def _balanced(system: System, num: Numbers, x: Array) -> np.ndarray:
+    """Whether x already balances every row to the rounding of its terms.
+
+    In strings of blocking junctions the voltages themselves are uncertain by more than any step bound, since a change
+    of millivolts moves no current that the node voltages can resolve; there this is all that can be asked for.
+    """
+    phi, _ = num.branches.value(system.sense(num, x))
+    return _at_floor(system, num, x, phi, 1e-12)[1]
+
+
 def _seen(z: Array, slope: Array) -> Array:
     """The resistance that a branch sees without its own conductance: z / (1 - phi' z), from the loaded z."""
     rest = 1.0 - slope * z
@@ -137,13 +151,15 @@ def _polish(
     return x, u, good, extra
 
 
-def _at_floor(system: System, num: Numbers, x: Array, phi: Array) -> tuple[Array, np.ndarray]:
+def _at_floor(
+    system: System, num: Numbers, x: Array, phi: Array, relative: float = CURRENT_RELATIVE
+) -> tuple[Array, np.ndarray]:
     """F(x) and, for each member, whether every row is zero within the rounding of its terms."""
     terms = system.contributions(num, x.astype(np.longdouble), phi.astype(np.longdouble))
     sums = system.balance.spread(terms)
     f = system.to_rows.spread(sums).astype(float)
     size = system.to_rows.spread(system.balance.spread(np.abs(terms))).astype(float)
     carried = system.to_rows.spread(np.abs(sums)).astype(float)
-    bound = CURRENT_RELATIVE * np.where(system.is_node, carried, 0.0) + TERM_RELATIVE * size + 1e-18
+    bound = relative * np.where(system.is_node, carried, 0.0) + TERM_RELATIVE * size + 1e-18
     small = (np.abs(f) <= bound).all(axis=-1)
     return f, small & (np.abs(carried * system.is_node) < CURRENT_LIMIT).all(axis=-1)
