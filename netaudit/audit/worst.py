@@ -28,7 +28,7 @@ _NEGLIGIBLE = 1e-12
 #: with at most this many values all vertices are solved besides those that sensitivities point to
 _ALL_VERTICES = 6
 _ROUNDS = 4
-_ZOOM = 9
+_ZOOM = 4
 
 
 @dataclass(frozen=True)
@@ -125,22 +125,46 @@ class Explorer:
         return [int(c) for c in np.flatnonzero(up | down)]
 
     def _zoom(self, objectives: Sequence[Objective], best: np.ndarray, ks: Sequence[int], column: int) -> None:
-        """Successively finer grids along one value for several objectives; updates ``best`` where something is larger."""
+        """Successively finer grids along one value for several objectives, then the top of the parabola through the
+        best three; updates ``best`` where something is larger."""
         left = {k: self.low[column] for k in ks}
         right = {k: self.high[column] for k in ks}
         for _ in range(_ZOOM):
-            grids = {k: np.linspace(left[k], right[k], 9) for k in ks}
-            wanted = {k: [self._with(int(best[k]), column, g) for g in grids[k]] for k in ks}
-            self._solve([row for k in ks for row in wanted[k]])
-            table = self._table(objectives)
+            self._try(objectives, best, {k: np.linspace(left[k], right[k], 9) for k in ks}, column)
             for k in ks:
-                rows = [self.known[r.tobytes()] for r in wanted[k] if r.tobytes() in self.known]
-                top = max(rows, key=lambda r, k=k: table[r, k])  # type: ignore[misc]
-                if table[top, k] >= table[best[k], k]:
-                    best[k] = top
                 width = (right[k] - left[k]) / 8
                 at = self.rows[int(best[k])][column]
                 left[k], right[k] = max(self.low[column], at - width), min(self.high[column], at + width)
+        tops = {k: self._parabola(objectives, int(best[k]), k, column, left[k], right[k]) for k in ks}
+        self._try(objectives, best, {k: np.array([top]) for k, top in tops.items()}, column)
+
+    def _try(self, objectives: Sequence[Objective], best: np.ndarray, grids: dict[int, Array], column: int) -> None:
+        """Solves the rows with these values in one column and takes over what is better."""
+        wanted = {k: [self._with(int(best[k]), column, g) for g in grid] for k, grid in grids.items()}
+        self._solve([row for rows in wanted.values() for row in rows])
+        table = self._table(objectives)
+        for k, rows in wanted.items():
+            for row in (self.known[r.tobytes()] for r in rows if r.tobytes() in self.known):
+                if table[row, k] > table[best[k], k]:
+                    best[k] = row
+
+    def _parabola(
+        self, objectives: Sequence[Objective], row: int, k: int, column: int, left: float, right: float
+    ) -> float:
+        """Where the parabola through the best row and its two neighbours has its top (the row itself if none)."""
+        at = float(self.rows[row][column])
+        ends = [self._with(row, column, left), self._with(row, column, right)]
+        self._solve(ends)
+        if not left < at < right or any(r.tobytes() not in self.known for r in ends):
+            return at
+        table = self._table(objectives)
+        fl, fr = (table[self.known[r.tobytes()], k] for r in ends)
+        dl, dr = (fl - table[row, k]) / (left - at), (fr - table[row, k]) / (right - at)
+        curvature = (dr - dl) / (right - left)
+        if not curvature < 0:
+            return at
+        slope = dl - curvature * (left - at)
+        return float(np.clip(at - slope / (2 * curvature), left, right))
 
     def _with(self, row: int, column: int, value: float) -> Array:
         out = self.rows[row].copy()

@@ -2,9 +2,12 @@
 
 from __future__ import annotations
 
+import numpy as np
+
 from netaudit.circuit.circuit import Circuit
 from netaudit.solve.certificate import certify
-from netaudit.solve.point import ModeResult, Point
+from netaudit.solve.point import ModeResult, Point, Uniqueness
+from netaudit.solve.runaway import follow
 from netaudit.solve.settle import Settled, Solver
 from netaudit.solve.solved import Solved
 from netaudit.solve.structure import unique_by_structure
@@ -21,15 +24,21 @@ def operate(circuit: Circuit) -> ModeResult:
 
 
 class Operation:
-    """A mode being solved; keeps its Solver for what comes after (corners, samples, load lines)."""
+    """A mode being solved; keeps its Solver and the solved boards for what comes after (corners, samples, load lines).
+
+    ``boards[k]`` is the board of ``result().points[k]``, as a batch of one.
+    """
 
     def __init__(self, circuit: Circuit) -> None:
         self.circuit = circuit
         self.system = System(circuit)
         self.solver = Solver(self.system)
+        self.boards: list[Solved] = []
 
     def result(self) -> ModeResult:
-        settled = self.solver.settle(self.solver.job())
+        """Solves the mode (once; asking again solves again)."""
+        followed = follow(self.solver, self.solver.job())
+        settled = followed.settled
         proven, because = unique_by_structure(self.system)
         if not settled.converged[0]:
             return self._nothing(settled, because)
@@ -41,8 +50,17 @@ class Operation:
                 f"{certificate.residual_current:.3g} A are left over on net {certificate.worst_net}"
             )
             return ModeResult(self.circuit, (), "searched", because, failure, certificate.worst_net)
-        point = make_point(solved, settled.method[0], int(settled.iterations[0]), proven)
-        return ModeResult(self.circuit, (point,), "proven" if proven else "searched", because)
+        self.boards = [settled.solved]
+        point = make_point(solved, settled, proven, self._gains(settled))
+        uniqueness: Uniqueness = "proven" if proven else "searched"
+        return ModeResult(self.circuit, (point,), uniqueness, because, runaway=followed.runaway)
+
+    def _gains(self, settled: Settled) -> dict[str, float]:
+        """The thermal loop gain R_th dP/dT_j of every heated device, the circuit responding."""
+        if settled.gain_matrix is None:
+            return {}
+        diagonal = np.diagonal(settled.gain_matrix[0])
+        return {self.system.devices[k].name: float(g) for k, g in zip(self.solver.heat.devices, diagonal, strict=True)}
 
     def _nothing(self, settled: Settled, because: str) -> ModeResult:
         certificate = certify(settled.solved.pick(0))
@@ -53,7 +71,7 @@ class Operation:
         return ModeResult(self.circuit, (), "searched", because, failure, certificate.worst_net)
 
 
-def make_point(solved: Solved, method: str, iterations: int, passive: bool) -> Point:
+def make_point(solved: Solved, settled: Settled, passive: bool, gains: dict[str, float]) -> Point:
     """The reported point; ``passive``: increasing branches and passive linear parts only, which settles stability."""
     system = solved.system
     certificate = certify(solved)
@@ -66,6 +84,14 @@ def make_point(solved: Solved, method: str, iterations: int, passive: bool) -> P
         else "not decided"
     )
     return Point(
-        nets, temperatures, solved.view, method, iterations,
-        certificate.residual_current, certificate.power_imbalance, stable, because,
-    )  # fmt: skip
+        nets,
+        temperatures,
+        solved.view,
+        settled.method[0],
+        int(settled.iterations[0]),
+        certificate.residual_current,
+        certificate.power_imbalance,
+        stable,
+        because,
+        gains,
+    )

@@ -65,7 +65,7 @@ class Solved:
 
         num = self.num.take(np.array([member])) if self.num.batch else self.num
         groups = tuple(
-            (f, i, {k: one(v, 1).reshape(-1) for k, v in p.items()}) for f, i, p in num.branches.groups
+            (f, i, {k: v.reshape(-1) for k, v in p.items()}) for f, i, p in num.branches.groups
         )
         flat = Numbers(
             num.g.reshape(-1), num.s.reshape(-1), num.inject.reshape(-1), num.sense.reshape(-1),
