@@ -47,6 +47,7 @@ class Explorer:
 
     def __init__(self, solver: Solver, nominal: Solved) -> None:
         self.solver = solver
+        solver.prepare(nominal)
         self.spans: tuple[Variable, ...] = variables(solver)
         self.low = np.array([v.quantity.low for v in self.spans])
         self.high = np.array([v.quantity.high for v in self.spans])

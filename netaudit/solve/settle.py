@@ -10,12 +10,14 @@ from netaudit.devices.base import Array, Value
 from netaudit.solve.heat import Heat, heat_paths, loop_gain, warming
 from netaudit.solve.ladder import climb
 from netaudit.solve.linear import Linear, choose
-from netaudit.solve.newton import newton
+from netaudit.solve.newton import newton, seen_resistance
 from netaudit.solve.solved import Solved
 from netaudit.solve.system import Numbers, Overrides, System
 
 #: temperatures settled to this, kelvin
 TEMPERATURE_STEP = 1e-7
+#: from this many members on a batch runs through the straight-line elimination, up to this many unknowns
+_STRAIGHT_MEMBERS, _STRAIGHT_UNKNOWNS = 48, 600
 #: beyond these a junction law has no meaning; iterates are kept between them
 COLDEST, HOTTEST = -270.0, 3000.0
 
@@ -54,6 +56,7 @@ class Solver:
         self.system = system
         self.heat: Heat = heat_paths(system, system.circuit)
         self.linear: Linear = choose(system)
+        self._straight: Linear | None = None
 
     def job(self, overrides: Overrides | None = None, ambient: Value | None = None, count: int = 1) -> Job:
         """A job that starts from rest: all branch values zero, everything at ambient."""
@@ -85,10 +88,23 @@ class Solver:
             temperature[:, self.heat.devices] = np.clip(moved, COLDEST, HOTTEST)
         return Settled(solved, good & ~moving, tuple(methods), total, gain, matrix)
 
+    def prepare(self, board: Solved) -> None:
+        """Works out the elimination order for large batches on a solved board (a batch of one)."""
+        from netaudit.solve.straight import Straight
+
+        if self._straight is None and self.system.n <= _STRAIGHT_UNKNOWNS:
+            slope = board.num.branches.value(board.u)[1]
+            still = np.zeros((1, self.system.n))
+            z = self.linear.solve(self.system, board.num, slope, still, 0)[1]
+            self._straight = Straight.build(self.system, board.num, slope[0], seen_resistance(z, slope)[0])
+
+    def _linear_for(self, count: int) -> Linear:
+        return self._straight if self._straight is not None and count >= _STRAIGHT_MEMBERS else self.linear
+
     def _electrical(
         self, num: Numbers, u: Array, remedies: bool
     ) -> tuple[Array, Array, np.ndarray, np.ndarray, list[str]]:
-        result = newton(self.system, num, u, self.linear)
+        result = newton(self.system, num, u, self._linear_for(len(u)))
         x, u, good = result.x.copy(), result.u.copy(), result.converged.copy()
         steps = result.iterations.copy()
         named = ["newton"] * len(u)
