@@ -1,0 +1,129 @@
+"""EDIF text to nested forms: keyword, items in order, and the line each form begins on."""
+
+from __future__ import annotations
+
+import gc
+import re
+from collections.abc import Iterator
+from dataclasses import dataclass
+from functools import cache
+from typing import Any
+
+from netaudit.failure import InputError
+from netaudit.place import Place
+from netaudit.syntax.grammar import grammar_text
+
+_PIECES = re.compile(r'"[^"]*"|[^\s()"]+')
+_BRACKETS = re.compile(r'"[^"]*"|\(|\)|\n|"')
+_ESCAPE = re.compile(r"%([^%]*)%")
+
+
+@dataclass(slots=True)
+class Form:
+    """``(keyword item ...)``: items are forms or atoms; a string keeps its quotes so that "1" and 1 stay apart."""
+
+    keyword: str
+    items: list[Form | str]
+    line: int
+
+    def forms(self, *keywords: str) -> Iterator[Form]:
+        """The forms directly inside, of these keywords (all when none is named)."""
+        for item in self.items:
+            if isinstance(item, Form) and (not keywords or item.keyword in keywords):
+                yield item
+
+    def first(self, *keywords: str) -> Form | None:
+        return next(self.forms(*keywords), None)
+
+    def atoms(self) -> list[str]:
+        return [item for item in self.items if isinstance(item, str)]
+
+
+def read_forms(text: str, file: str) -> Form:
+    """The outermost form.  Raises InputError with the line of the form that was never closed, of a bracket too many, or
+    of what stands outside."""
+    from lark.exceptions import UnexpectedInput
+
+    running = gc.isenabled()
+    # millions of small objects and no cycles: the collector would only walk them again and again
+    gc.disable()
+    try:
+        return _parser().parse(text)  # type: ignore[no-any-return]  # lark types a tree; the transformer makes a Form
+    except UnexpectedInput as error:
+        raise _unbalanced(text, file, error) from None
+    finally:
+        if running:
+            gc.enable()
+
+
+@cache
+def _parser() -> Any:
+    from lark import Lark, Transformer
+
+    class Build(Transformer[Any, Form]):
+        def leaf(self, children: list[Any]) -> Form:
+            return _form(str(children[0])[1:-1], children[0].line, [])
+
+        def form(self, children: list[Any]) -> Form:
+            return _form(str(children[0])[1:], children[0].line, children[1:])
+
+        def start(self, children: list[Any]) -> Form:
+            return children[0]  # type: ignore[no-any-return]  # see read_forms
+
+    return Lark(grammar_text("edif.lark"), parser="lalr", lexer="basic", transformer=Build())
+
+
+def _form(head: str, line: int, rest: list[Any]) -> Form:
+    pieces: list[Any] = _PIECES.findall(head)
+    return Form(pieces[0].lower(), pieces[1:] + [r if isinstance(r, Form) else str(r) for r in rest], line)
+
+
+def _unbalanced(text: str, file: str, error: Exception) -> InputError:
+    """What is wrong with the brackets or quotes, found by one walk over them."""
+    opened: list[int] = []
+    line = 1
+    for match in _BRACKETS.finditer(text):
+        token = match.group()
+        if token == "(":
+            opened.append(line)
+        elif token == ")":
+            if not opened:
+                return InputError("a closing bracket too many", place=Place(file, line), mend="remove it")
+            opened.pop()
+            if not opened and text[match.end() :].strip():
+                return InputError("text after the end of the outermost form", place=Place(file, line), mend="remove it")
+        elif token == '"':
+            return InputError("a string that is never closed", place=Place(file, line), mend='add the closing "')
+        line += token.count("\n")
+    if opened:
+        return InputError(
+            f"the form that begins here is never closed ({len(opened)} closing brackets are missing at the end)",
+            place=Place(file, opened[-1]),
+            mend="the file is cut short: export it again",
+        )
+    where = int(getattr(error, "line", 1) or 1)
+    return InputError("this is not an EDIF file", place=Place(file, max(where, 1)), mend="it must begin with (edif ...)")
+
+
+def string(item: str) -> str:
+    """The text of a string token: quotes off, line breaks dropped, ``%…%`` decimal codes replaced by characters."""
+    body = item[1:-1] if item.startswith('"') else item
+    body = body.replace("\r", "").replace("\n", "")
+
+    def codes(match: re.Match[str]) -> str:
+        numbers = match.group(1).split()
+        if not all(n.isdigit() and int(n) < 0x110000 for n in numbers):
+            return match.group()
+        return "".join(chr(int(n)) for n in numbers)
+
+    return _ESCAPE.sub(codes, body) if "%" in body else body
+
+
+def identifier(atom: str) -> str:
+    """The key of an identifier: case-insensitive, a leading & taken off."""
+    return atom.removeprefix("&").lower()
+
+
+def plain(atom: str) -> str:
+    """The identifier as written, a leading & taken off."""
+    return atom.removeprefix("&")
