@@ -145,36 +145,48 @@ class Exponential(Family):
 
 @dataclass(frozen=True)
 class Ramp(Family):
-    """phi(u) = max(0, u): the piece from which limits are built, min(a, b) = a - max(0, a - b)."""
+    """phi(u) = max(0, u - offset): the piece from which limits are built, min(a, b) = a - max(0, a - b)."""
 
+    parameters = ("offset",)
     shape: Shape = "nondecreasing"
 
     def value(self, u: Array, p: Parameters) -> tuple[Array, Array]:
-        on = u > 0
-        return np.where(on, u, 0.0), on.astype(float)
+        w = u - p["offset"]
+        on = w > 0
+        return np.where(on, w, 0.0), on.astype(float)
 
     def bounds(self, low: Array, high: Array, p: Parameters) -> tuple[Array, Array]:
-        return np.maximum(low, 0.0), np.maximum(high, 0.0)
+        lo, hi = _shifted(low, high, p["offset"])
+        return np.maximum(lo, 0.0), np.maximum(hi, 0.0)
 
     def slope_bounds(self, low: Array, high: Array, p: Parameters) -> tuple[Array, Array]:
-        return (low > 0).astype(float), (high >= 0).astype(float)
+        lo, hi = _shifted(low, high, p["offset"])
+        return (lo > 0).astype(float), (hi >= 0).astype(float)
 
 
 @dataclass(frozen=True)
 class Square(Family):
-    """phi(u) = max(0, u)^2 / 2: the square law of a field-effect channel (u is the overdrive v_GS - V_th)."""
+    """phi(u) = max(0, u - offset)^2 / 2: the square law of a field-effect channel (offset is the threshold)."""
 
+    parameters = ("offset",)
     shape: Shape = "nondecreasing"
 
     def value(self, u: Array, p: Parameters) -> tuple[Array, Array]:
-        on = np.maximum(u, 0.0)
+        on = np.maximum(u - p["offset"], 0.0)
         return 0.5 * on * on, on
 
     def bounds(self, low: Array, high: Array, p: Parameters) -> tuple[Array, Array]:
-        return widen(0.5 * np.maximum(low, 0.0) ** 2, 0.5 * np.maximum(high, 0.0) ** 2)
+        lo, hi = _shifted(low, high, p["offset"])
+        return widen(0.5 * np.maximum(lo, 0.0) ** 2, 0.5 * np.maximum(hi, 0.0) ** 2)
 
     def slope_bounds(self, low: Array, high: Array, p: Parameters) -> tuple[Array, Array]:
-        return np.maximum(low, 0.0), np.maximum(high, 0.0)
+        lo, hi = _shifted(low, high, p["offset"])
+        return np.maximum(lo, 0.0), np.maximum(hi, 0.0)
+
+
+def _shifted(low: Array, high: Array, offset: Array) -> tuple[Array, Array]:
+    """[low, high] - offset, rounded outwards."""
+    return np.nextafter(low - offset, -np.inf), np.nextafter(high - offset, np.inf)
 
 
 EXPONENTIAL = Exponential()

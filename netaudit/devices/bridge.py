@@ -1,0 +1,53 @@
+"""``bridge``: four diodes of the named part, AC1 and AC2 to +, - to AC1 and AC2."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from netaudit.devices.base import Array, Assembly, Check, Device, Growth, Kind, Values, View, two_pin
+from netaudit.devices.common import POWER_RATINGS, junction_temperature, power
+from netaudit.devices.diode import JUNCTION_KEYS
+from netaudit.devices.junction import curve_of, forward, with_junction
+
+_PAIRS = (("AC1", "+"), ("AC2", "+"), ("-", "AC1"), ("-", "AC2"))
+
+
+def _forward(view: View) -> Array:
+    """The largest of the four diodes' currents."""
+    return np.max(np.stack([view.branch(k)[1] for k in range(4)]), axis=0)
+
+
+def _reverse(view: View) -> Array:
+    """The largest of the four diodes' reverse voltages."""
+    return np.max(np.stack([view.v(q) - view.v(p) for p, q in _PAIRS]), axis=0)
+
+
+@dataclass(frozen=True)
+class Bridge(Kind):
+    def resolve(self, device: Device) -> Device:
+        return with_junction(device)
+
+    def stamp(self, device: Device, values: Values, a: Assembly) -> None:
+        for p, q in _PAIRS:
+            if device.points:
+                two_pin(a, curve_of(device), a.pin(p), a.pin(q))
+            else:
+                forward(a, values, a.pin(p), a.pin(q))
+
+    def growth(self, device: Device) -> Growth:
+        return curve_of(device).shape if device.points else "increasing"
+
+    def checks(self, device: Device) -> tuple[Check, ...]:
+        return (
+            Check("forward-current", "A", ("I_F",), _forward, required=True),
+            Check("reverse-voltage", "V", ("V_R", "V_RRM"), _reverse, required=True),
+            power(),
+            junction_temperature(),
+        )
+
+
+KIND = Bridge(
+    "bridge", (("AC1", "AC2", "+", "-"),), keys={**JUNCTION_KEYS}, ratings=("I_F", "V_R", "V_RRM", *POWER_RATINGS)
+)

@@ -1,0 +1,64 @@
+"""``diode`` and ``led``: a junction with leakage, or a measured curve; breakdown where V_Z is given."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from netaudit.devices.base import Array, Assembly, Check, Device, Growth, Key, Kind, Values, View, two_pin
+from netaudit.devices.common import POWER_RATINGS, junction_temperature, power
+from netaudit.devices.junction import LEAK, breakdown, curve_of, forward, with_breakdown, with_junction
+
+JUNCTION_KEYS = {
+    "I_S": Key("A", positive=True),
+    "n": Key("1", positive=True),
+    "R_S": Key("ohm", least=0.0),
+    "T_0": Key("degC"),
+    "E_g": Key("eV", positive=True),
+    "alpha_VF": Key("V/K", at="A"),
+    "I_R": Key("A", at="V", least=0.0),
+    "V_F": Key("V"),
+    "V_Z": Key("V", positive=True),
+    "I_Z": Key("A", positive=True),
+    "r_Z": Key("ohm", positive=True),
+    "r_ZK": Key("ohm", positive=True),
+    "alpha_VZ": Key("1/K"),
+    "material": Key(),
+}
+
+
+@dataclass(frozen=True)
+class Diode(Kind):
+    def resolve(self, device: Device) -> Device:
+        return with_breakdown(with_junction(device))
+
+    def stamp(self, device: Device, values: Values, a: Assembly) -> None:
+        p, q = a.pin("A"), a.pin("K")
+        if device.points:
+            two_pin(a, curve_of(device), p, q)
+            a.add(p, p, LEAK)
+            a.add(p, q, -LEAK)
+            a.add(q, q, LEAK)
+            a.add(q, p, -LEAK)
+            return
+        forward(a, values, p, q)
+        if values.has("V_knee"):
+            breakdown(a, values, q, p)
+
+    def growth(self, device: Device) -> Growth:
+        return curve_of(device).shape if device.points else "increasing"
+
+    def checks(self, device: Device) -> tuple[Check, ...]:
+        return (
+            Check("forward-current", "A", ("I_F",), lambda view: view.i("A"), required=True),
+            Check("reverse-voltage", "V", ("V_R", "V_RRM"), lambda view: view.v("K") - view.v("A"), required=True),
+            power(),
+            junction_temperature(),
+        )
+
+    def requirement(self, view: View, device: Device) -> Array:
+        return view.i("A")
+
+
+KIND = Diode(
+    "diode", (("A", "K"),), keys={**JUNCTION_KEYS}, ratings=("I_F", "V_R", "V_RRM", *POWER_RATINGS)
+)

@@ -1,0 +1,168 @@
+"""Junctions: how I_S, leakage and breakdown enter a branch, and how they move with temperature.
+
+Forward: i = I_S (exp(w / n V_T) - 1), v = w + R_S i.  I_S(T) = I_S(T_0) (T/T_0)^(x/n) exp[E_g/(n k) (1/T_0 - 1/T)], x = 3
+(pn) or 2 (Schottky); a measured alpha_VF at a current wins.  Leakage I_R at V_R is a conductance I_R/V_R that doubles
+each 10 K: it is exact at the stated point and zero at zero volts.  Breakdown: v = V_Z + V_k ln(i/I_Z) + R_z (i - I_Z).
+Left out: the voltage dependence of leakage, high injection, avalanche noise.
+"""
+
+from __future__ import annotations
+
+import math
+from dataclasses import replace
+
+import numpy as np
+
+from netaudit.devices.base import Assembly, Device, Value, Values, conductance, two_pin
+from netaudit.devices.families import EXPONENTIAL
+from netaudit.devices.table import Table
+from netaudit.failure import InputError
+from netaudit.parts.materials import Material, material, zener_class
+from netaudit.quantities.quantity import Quantity, exact
+
+#: Boltzmann constant in J/K and elementary charge in C (SI 2019, exact)
+BOLTZMANN, CHARGE = 1.380649e-23, 1.602176634e-19
+#: every junction leaks this besides its law, so that strings of blocking junctions are not singular
+LEAK = 1e-19
+KELVIN = 273.15
+
+
+def thermal_voltage(temperature: Value) -> Value:
+    """V_T = k T / q in volts, temperature in degC."""
+    return BOLTZMANN * (np.asarray(temperature) + KELVIN) / CHARGE
+
+
+def log_saturation(values: Values, n: Value) -> Value:
+    """ln I_S at the device's temperature, the specimens' shift V_F included."""
+    t = np.asarray(values.temperature) + KELVIN
+    t0 = np.asarray(values["T_0"]) + KELVIN
+    log = np.log(values["I_S"])
+    vt = BOLTZMANN * t / CHARGE
+    if values.has("alpha_VF"):
+        at = values["alpha_VF.at"]
+        cold = np.asarray(n) * BOLTZMANN * t0 / CHARGE * (np.log(at) - log)
+        log = np.log(at) - (cold + np.asarray(values["alpha_VF"]) * (t - t0)) / (np.asarray(n) * vt)
+    else:
+        growth = np.asarray(values["E_g"]) * CHARGE / (np.asarray(n) * BOLTZMANN)
+        log = log + np.asarray(values["exponent"]) / np.asarray(n) * np.log(t / t0) + growth * (1 / t0 - 1 / t)
+    return log - np.asarray(values.get("V_F", 0.0)) / (np.asarray(n) * vt)
+
+
+def forward(a: Assembly, values: Values, p: int, q: int) -> None:
+    """The junction from p (anode) to q (cathode) with leakage."""
+    n = values["n"]
+    voltage = np.asarray(n) * np.asarray(thermal_voltage(values.temperature))
+    two_pin(a, EXPONENTIAL, p, q, log_I=log_saturation(values, n), V=voltage, R=values["R_S"])
+    leak: Value = LEAK
+    if values.has("I_R"):
+        doubling = 2.0 ** ((np.asarray(values.temperature) - 25.0) / 10.0)
+        leak = leak + np.asarray(values["I_R"]) / np.asarray(values["I_R.at"]) * doubling
+    conductance(a, p, q, leak)
+
+
+def breakdown(a: Assembly, values: Values, p: int, q: int) -> None:
+    """The breakdown branch: current from p to q once v_p - v_q reaches V_Z (cathode to anode)."""
+    v_z: Value = values["V_Z"]
+    if values.has("alpha_VZ"):
+        rise = np.asarray(values.temperature) - 25.0
+        per_volt = np.asarray(values["alpha_VZ"]) * rise
+        v_z = v_z + per_volt if values.has("alpha_VZ.volts") else v_z * (1.0 + per_volt)
+    i_z, knee, r = values["I_Z"], np.asarray(values["V_knee"]), np.asarray(values["R_breakdown"])
+    log_i = np.log(i_z) - (np.asarray(v_z) - r * np.asarray(i_z)) / knee
+    two_pin(a, EXPONENTIAL, p, q, log_I=log_i, V=knee, R=r)
+
+
+def known_material(device: Device) -> Material | None:
+    name = device.words.get("material", "")
+    return material(name, device.place) if name else None
+
+
+def with_junction(device: Device, default: str = "") -> Device:
+    """The device with I_S, n, R_S, T_0, E_g and the exponent filled in; ``missing`` or ``rough`` where it lacks them.
+
+    ``default`` names a material to fall back on without a word (the forward branch of a zener).
+    """
+    values = dict(device.values)
+    known = known_material(device)
+    rough = device.rough
+    if device.points:
+        return device
+    if "I_S" not in values:
+        source = known or (material(default, device.place) if default else None)
+        if source is None:
+            return replace(device, missing="it has no model: neither I_S, forward points, a curve nor a material")
+        if known is not None and not default:
+            rough = rough or f"its model is the default of {known.name}"
+        values["I_S"] = exact(source.I_S, "A")
+        values.setdefault("n", exact(source.n, "1"))
+        values.setdefault("R_S", exact(source.R_S, "ohm"))
+    for name, unit, least in (("I_S", "A", 0.0), ("n", "1", 0.0)):
+        if name in values and values[name].low <= least:
+            raise InputError(f"{device.name}: {name} must be above zero", place=device.place)
+    values.setdefault("n", exact(1.0, "1"))
+    values.setdefault("R_S", exact(0.0, "ohm"))
+    values.setdefault("T_0", exact(25.0, "degC"))
+    gap = known or material(default or "silicon", device.place)
+    values.setdefault("E_g", exact(gap.E_g, "eV"))
+    values["exponent"] = exact(gap.exponent, "1")
+    _check_conditions(device, values)
+    return replace(device, values=values, rough=rough)
+
+
+def _check_conditions(device: Device, values: dict[str, Quantity]) -> None:
+    for name, unit in (("I_R", "40V"), ("alpha_VF", "1mA")):
+        if name in values and (f"{name}.at" not in values or values[f"{name}.at"].nominal <= 0):
+            raise InputError(
+                f"{device.name}: {name} needs its condition", place=device.place, mend=f'write "... @ {unit}" in quotes'
+            )
+
+
+def with_breakdown(device: Device) -> Device:
+    """The device with I_Z, the knee's voltage V_k and the series resistance of its breakdown; see the module."""
+    values = dict(device.values)
+    if "V_Z" not in values:
+        return device
+    v_z = values["V_Z"].nominal
+    if v_z <= 0:
+        raise InputError(f"{device.name}: V_Z must be above zero", place=device.place)
+    rough = device.rough
+    class_i, class_r = zener_class(v_z)
+    if "I_Z" not in values and "r_Z" not in values:
+        rough = rough or f"its I_Z and r_Z are those of a typical {v_z:g} V part"
+    values.setdefault("I_Z", exact(class_i, "A"))
+    values.setdefault("r_Z", exact(class_r, "ohm"))
+    i_z, r_z = values["I_Z"].nominal, values["r_Z"].nominal
+    if i_z <= 0 or r_z <= 0:
+        raise InputError(f"{device.name}: I_Z and r_Z must be above zero", place=device.place)
+    knee, r = i_z * r_z / 2, r_z / 2
+    if "r_ZK" in values:
+        i_zk = values["I_ZK"].nominal if "I_ZK" in values else _rated(device, "I_ZK")
+        r_zk = values["r_ZK"].nominal
+        if not 0 < i_zk < i_z or r_zk <= r_z:
+            raise InputError(
+                f"{device.name}: r_ZK must be above r_Z, at an I_ZK below I_Z", place=device.place
+            )
+        knee = min((r_zk - r_z) / (1 / i_zk - 1 / i_z), i_z * r_z)
+        r = r_z - knee / i_z
+    values["V_knee"], values["R_breakdown"] = exact(knee, "V"), exact(r, "ohm")
+    if "alpha_VZ" in values and values["alpha_VZ"].unit == "V/K":
+        values["alpha_VZ.volts"] = exact(1.0, "1")
+    return replace(device, values=values, rough=rough)
+
+
+def _rated(device: Device, symbol: str) -> float:
+    rating = device.ratings.get(symbol)
+    return rating.nominal if rating is not None else math.nan
+
+
+def curve_of(device: Device) -> Table:
+    """The measured curve of a device as a branch family; InputError for points that are none."""
+    points = tuple(sorted(device.points))
+    if len(points) < 2:
+        raise InputError(f"{device.name}: a curve needs two points at least", place=device.place)
+    for (v0, i0), (v1, i1) in zip(points, points[1:], strict=False):
+        if v0 == v1:
+            raise InputError(
+                f"{device.name}: two currents, {i0:g} A and {i1:g} A, at one voltage {v0:g} V", place=device.place
+            )
+    return Table(points)

@@ -1,0 +1,8 @@
+"""``led``: a diode whose material is worth knowing; see ``diode``."""
+
+from __future__ import annotations
+
+from netaudit.devices.diode import JUNCTION_KEYS, Diode
+from netaudit.devices.common import POWER_RATINGS
+
+KIND = Diode("led", (("A", "K"),), keys={**JUNCTION_KEYS}, ratings=("I_F", "V_R", "V_RRM", *POWER_RATINGS))
