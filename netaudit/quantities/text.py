@@ -1,0 +1,25 @@
+"""Small helpers on the text of values: what a message may repeat of it."""
+
+from __future__ import annotations
+
+from typing import Protocol
+
+from netaudit.place import Place
+
+#: the longest text that is read as one value; nobody writes a number of a thousand characters
+LONGEST = 1000
+
+
+class Token(Protocol):
+    """A piece of text with its place (a word of a statement is one)."""
+
+    @property
+    def text(self) -> str: ...
+
+    @property
+    def place(self) -> Place: ...
+
+
+def shown(text: str) -> str:
+    """The text in quotes for a message, cut when it is long."""
+    return f'"{text}"' if len(text) <= 40 else f'"{text[:32]}…" ({len(text)} characters)'

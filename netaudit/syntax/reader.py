@@ -1,0 +1,181 @@
+"""Netlist files to statements: decoding, logical lines, includes."""
+
+from __future__ import annotations
+
+import hashlib
+
+from dataclasses import dataclass, field, replace
+from pathlib import Path
+
+from netaudit.failure import InputError
+from netaudit.place import Place
+from netaudit.syntax.lines import LogicalLine, logical_lines
+from netaudit.syntax.parse import Mark, Parser
+from netaudit.syntax.paths import below_root, project_root
+from netaudit.syntax.statements import BlockStatement, ModeStatement, Netlist, PartsStatement, Statement
+
+LARGEST_FILE = 64 << 20
+_EXPORTS = (".edf", ".edn", ".edif", ".csv")
+
+
+@dataclass
+class _Reading:
+    """What is collected while files are read."""
+
+    root: str
+    statements: list[Statement] = field(default_factory=list)
+    files: dict[str, str] = field(default_factory=dict)
+    only_modes: bool = False
+
+
+def read_netlist(path: str, *, root: str | None = None) -> Netlist:
+    """A netlist and all that it includes.  Raises InputError with the place of whatever cannot be used."""
+    reading = _Reading(project_root(path, root))
+    _read_file(path, path, reading, (), (str(Path(path).resolve()),))
+    return Netlist(path, reading.root, tuple(reading.statements), reading.only_modes, reading.files)
+
+
+def read_netlist_text(text: str, name: str = "netlist") -> Netlist:
+    """The same for a text that stands nowhere; its includes are looked for from the current folder."""
+    reading = _Reading(project_root(name))
+    _read_text(text, name, reading, (), ())
+    return Netlist(name, reading.root, tuple(reading.statements), reading.only_modes, reading.files)
+
+
+def _read_file(path: str, shown: str, reading: _Reading, chain: tuple[Place, ...], above: tuple[str, ...]) -> None:
+    data = read_bytes(path, shown, chain[-1] if chain else None)
+    reading.files[shown] = hashlib.sha256(data).hexdigest()
+    _read_text(decode(data, shown, chain), shown, reading, chain, above)
+
+
+def read_bytes(path: str, shown: str, place: Place | None) -> bytes:
+    """The content of a file; InputError when there is none, it is a folder, or it is too large."""
+    try:
+        if Path(path).is_dir():
+            raise InputError(f"{shown} is a folder", place=place, mend="name a file in it")
+        size = Path(path).stat().st_size
+        if size > LARGEST_FILE:
+            raise InputError(f"{shown} has {size >> 20} MiB", place=place, mend=f"at most {LARGEST_FILE >> 20} are read")
+        return Path(path).read_bytes()
+    except (OSError, ValueError) as error:
+        reason = getattr(error, "strerror", None) or str(error)
+        raise InputError(f"{shown} cannot be read: {reason}", place=place) from None
+
+
+def decode(data: bytes, shown: str, chain: tuple[Place, ...] = ()) -> str:
+    try:
+        return data.decode("utf-8-sig")
+    except UnicodeDecodeError as error:
+        line = data[: error.start].count(b"\n") + 1
+        raise InputError("this is not UTF-8", place=Place(shown, line, chain=chain), mend="save it as UTF-8") from None
+
+
+def _read_text(text: str, shown: str, reading: _Reading, chain: tuple[Place, ...], above: tuple[str, ...]) -> None:
+    parser = Parser()
+    opened: list[tuple[Mark, list[Statement]]] = []
+    first = True
+    for line in logical_lines(text, shown, chain):
+        found = parser.parse(line, first=first)
+        first = False
+        if isinstance(found, Mark):
+            _mark(found, line, reading, opened, chain, above)
+        else:
+            _add(found, line, reading, opened)
+    if first:
+        raise InputError("the netlist is empty", place=Place(shown, 1, chain=chain), mend="begin it with: netlist 1")
+    if opened:
+        mark = opened[-1][0]
+        raise InputError(
+            f"{mark.word} {mark.name.text!r} that begins here has no end", place=mark.place, mend="close it with: end"
+        )
+
+
+def _add(found: Statement, line: LogicalLine, reading: _Reading, opened: list[tuple[Mark, list[Statement]]]) -> None:
+    if opened:
+        opened[-1][1].append(found)
+        return
+    if isinstance(found, PartsStatement) and found.file.quoted:
+        found = replace(found, path=below_root(found.file.text, found.place, reading.root))
+    reading.statements.append(found)
+
+
+def _mark(
+    mark: Mark,
+    line: LogicalLine,
+    reading: _Reading,
+    opened: list[tuple[Mark, list[Statement]]],
+    chain: tuple[Place, ...],
+    above: tuple[str, ...],
+) -> None:
+    if mark.word in ("mode", "block"):
+        if opened:
+            outer = opened[-1][0]
+            raise InputError(
+                f"{mark.word} inside the {outer.word} {outer.name.text!r} of line {outer.place.line}",
+                place=mark.place,
+                mend="close the first with: end",
+            )
+        opened.append((mark, []))
+    elif mark.word == "end":
+        if not opened:
+            raise InputError("end without a mode or block before it", place=mark.place, mend="remove it")
+        start, body = opened.pop()
+        reading.statements.append(_closed(start, body))
+    elif opened:
+        raise InputError(
+            f"{mark.word} inside the {opened[-1][0].word} of line {opened[-1][0].place.line}",
+            place=mark.place,
+            mend="close it with: end",
+        )
+    elif mark.word == "only":
+        reading.only_modes = True
+    elif mark.word == "include":
+        _include(mark, reading, chain, above)
+
+
+def _include(mark: Mark, reading: _Reading, chain: tuple[Place, ...], above: tuple[str, ...]) -> None:
+    path = below_root(mark.name.text, mark.place, reading.root)
+    if path.lower().endswith(_EXPORTS):
+        raise InputError(
+            "schematic exports cannot be included yet", place=mark.name.place, mend="include a netlist of this language"
+        )
+    resolved = str(Path(path).resolve())
+    if resolved in above:
+        raise InputError(f"{mark.name.text} includes itself", place=mark.name.place, mend="break the cycle")
+    if len(above) > 60:
+        raise InputError("includes nested more than 60 deep", place=mark.name.place)
+    _read_file(path, path, reading, (*chain, replace(mark.place, chain=())), (*above, resolved))
+
+
+def _closed(mark: Mark, body: list[Statement]) -> Statement:
+    from netaudit.syntax.statements import (
+        AmbientStatement,
+        CoveredStatement,
+        DeviceStatement,
+        OmitStatement,
+        PlaceStatement,
+        SameHeatStatement,
+        SetStatement,
+    )
+
+    if mark.word == "mode":
+        changes = []
+        for s in body:
+            if not isinstance(s, (SetStatement, OmitStatement, PlaceStatement, AmbientStatement)):
+                raise InputError(
+                    f"a mode holds set, omit, place and ambient only (mode {mark.name.text!r} of line {mark.place.line})",
+                    place=s.place,
+                    mend="is the mode's end missing above?",
+                )
+            changes.append(s)
+        return ModeStatement(mark.name, tuple(changes), mark.place)
+    for s in body:
+        if not isinstance(s, (DeviceStatement, CoveredStatement, SameHeatStatement)):
+            raise InputError(
+                f"a block holds devices only (block {mark.name.text} of line {mark.place.line})",
+                place=s.place,
+                mend="is the block's end missing above?",
+            )
+    return BlockStatement(mark.name, mark.pins, mark.defaults, tuple(body), mark.place)
+
+
