@@ -1,0 +1,45 @@
+"""What a rule is: a name, a level, the page that ``explain`` prints, and perhaps a function that finds."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterable
+from dataclasses import dataclass, field
+from typing import Literal
+
+from netaudit.circuit.circuit import Board
+from netaudit.circuit.graph import Graph
+from netaudit.devices.base import Device
+from netaudit.finding import Finding, Level
+
+Stage = Literal["structure", "stress", "point", "expect", "fault", "gate"]
+
+
+@dataclass(frozen=True)
+class Site:
+    """What a structural rule looks at: the board and the graph of one of its modes."""
+
+    board: Board
+    graph: Graph
+
+
+@dataclass(frozen=True)
+class Rule:
+    """A rule.  ``find`` is there for structural rules; findings of other stages come from the audit of solved points."""
+
+    name: str
+    level: Level
+    stage: Stage
+    summary: str
+    find: Callable[[Site], Iterable[Finding]] | None = field(default=None, compare=False)
+
+
+def about(device: Device) -> dict[str, str | int]:
+    """The fields by which a finding points at a device."""
+    return {"device": device.name, "file": device.place.file, "line": device.place.line}
+
+
+def listed(names: Iterable[str], most: int = 6) -> str:
+    """Names for a sentence."""
+    every = list(names)
+    shown = ", ".join(every[:most])
+    return shown if len(every) <= most else f"{shown} and {len(every) - most} more"
