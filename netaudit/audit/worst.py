@@ -45,10 +45,11 @@ class Extreme:
 class Explorer:
     """Explores the box of one solved operating point (``nominal``: a batch of one)."""
 
-    def __init__(self, solver: Solver, nominal: Solved) -> None:
+    def __init__(self, solver: Solver, nominal: Solved, nominal_only: bool = False) -> None:
         self.solver = solver
-        solver.prepare(nominal)
-        self.spans: tuple[Variable, ...] = variables(solver)
+        self.spans: tuple[Variable, ...] = () if nominal_only else variables(solver)
+        if self.spans:
+            solver.prepare(nominal)
         self.low = np.array([v.quantity.low for v in self.spans])
         self.high = np.array([v.quantity.high for v in self.spans])
         self.middle = np.array([v.quantity.nominal for v in self.spans])

@@ -1,0 +1,107 @@
+"""The limit of a check at a corner: the rating at the actual temperature and the policy's share of it."""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+
+import numpy as np
+
+from netaudit.devices.base import Array, Check, Device, View
+from netaudit.parts.part import Rating
+from netaudit.parts.policy import Policy, Row
+
+#: kinds whose P_tot refers to 70 degC and falls to zero at 155 degC unless stated otherwise
+RESISTIVE = frozenset({"resistor", "trimmer", "thermistor", "inductor"})
+_TEMPERATURES = {True: (70.0, 155.0), False: (25.0, math.nan)}
+
+
+@dataclass(frozen=True)
+class Limit:
+    """The rating of one check of one device; ``why`` says what is missing when it cannot be made."""
+
+    device: Device
+    check: Check
+    policy: Policy
+    heated: bool
+    on_path: bool
+
+    @property
+    def symbols(self) -> tuple[str, ...]:
+        return tuple(s for s in self.check.symbols if s in self.device.ratings)
+
+    @property
+    def missing(self) -> str:
+        """The symbol that is missing, empty when the check can be made."""
+        symbols = self.symbols
+        if self.check.quantity == "reverse-polarity":
+            return ""
+        if not symbols:
+            return " or ".join(self.check.symbols)
+        if self.check.quantity == "junction-temperature" and not self.heated:
+            return "R_th_ja"
+        if self.check.derated and self._by_case and not self.on_path:
+            return "R_th_ja (P_tot refers to the case, and no heat path is given)"
+        return ""
+
+    @property
+    def _by_case(self) -> bool:
+        """Whether P_tot refers to the case: R_th_jc is stated and R_th_ja is not."""
+        return "R_th_jc" in self.device.ratings and "R_th_ja" not in self.device.ratings
+
+    def rating(self, view: View) -> Array:
+        """The maker's value at this temperature: the lowest of the symbols given."""
+        if self.check.quantity == "reverse-polarity":
+            allowed = self.device.ratings.get("V_rev")
+            base = np.asarray(0.0 if allowed is None else allowed.nominal)
+            return np.broadcast_to(base, np.shape(view.v("+")))
+        every = [self._at(self.device.ratings[s], view) for s in self.symbols]
+        return np.asarray(np.min(np.stack(np.broadcast_arrays(*every)), axis=0))
+
+    def _at(self, rating: Rating, view: View) -> Array:
+        ambient = np.broadcast_to(view.ambient, np.shape(view.temperature))
+        if self.check.derated and len(rating.points) == 1:
+            return self._derated(rating.nominal, view, ambient)
+        return rating.at(ambient)
+
+    def _derated(self, power: float, view: View, ambient: Array) -> Array:
+        """Linear from T_ref down to zero at T_j (semiconductors) or T_max (resistive parts)."""
+        ratings = self.device.ratings
+        resistive = self.device.kind in RESISTIVE
+        start, end = _TEMPERATURES[resistive]
+        if "T_ref" in ratings:
+            start = ratings["T_ref"].nominal
+        for symbol in ("T_max", "T_j") if resistive else ("T_j",):
+            if symbol in ratings:
+                end = ratings[symbol].nominal
+                break
+        if math.isnan(end) or end <= start:
+            return np.full(np.shape(ambient), power)
+        t = ambient
+        if self._by_case:
+            t = view.temperature - ratings["R_th_jc"].nominal * view.power
+        return np.asarray(power * np.clip((end - t) / (end - start), 0.0, 1.0))
+
+    def limit(self, view: View) -> Array:
+        """The rating times the policy's share (or its cap or offset), whichever is lowest."""
+        row = self.row
+        rating = self.rating(view)
+        return rating if row is None else row.limit(rating)
+
+    @property
+    def row(self) -> Row | None:
+        """The policy's row for this check, None where it has none."""
+        return self.policy.row(owners(self.device), self.check.symbols)
+
+
+def value(check: Check, view: View) -> Array:
+    """The stress: positive in the direction that the rating limits."""
+    measured = check.measure(view)
+    return np.abs(measured) if check.both else measured
+
+
+def owners(device: Device) -> tuple[str, ...]:
+    """Under which names a policy may speak of a device: its part, its kind as polarised, its kind."""
+    part = (device.part.name,) if device.part is not None else ()
+    polarised = (f"{device.kind}-polarised",) if "+" in device.pins and device.kind == "capacitor" else ()
+    return (*part, *polarised, device.kind)

@@ -1,0 +1,74 @@
+"""What an audit says, as records: stresses, coverage, findings, verdict."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass, field
+
+from netaudit.audit.worst import Proof
+from netaudit.circuit.circuit import Board
+from netaudit.finding import Finding, Level, rank
+from netaudit.solve.point import ModeResult
+
+
+@dataclass(frozen=True)
+class Stress:
+    """A part's stress against its rating at the worst corner (SI units, temperatures in degC).
+
+    ``rating`` is the maker's value at the actual temperature, ``limit`` the policy's share of it, ``ratio`` value over
+    limit (None where there is no limit, or where it is 0).  ``variant`` names the second solution after a back-feed.
+    ``row`` and ``document`` say which policy row made the limit.
+    """
+
+    device: str
+    quantity: str
+    unit: str
+    nominal: float
+    worst: float
+    rating: float | None
+    limit: float | None
+    ratio: float | None
+    mode: str
+    corner: Mapping[str, float]
+    proof: Proof
+    bound: float | None = None
+    lower_bound: bool = False
+    variant: str | None = None
+    symbol: str = ""
+    row: str = ""
+    document: str = ""
+    origin: str = ""
+
+
+@dataclass(frozen=True)
+class Coverage:
+    """What was looked at and what was not."""
+
+    parts: int
+    audited: int
+    covered: int
+    unmodelled: tuple[str, ...]
+    checks: int
+    checks_missing_rating: int
+    values_without_spread: int
+    not_audited: Mapping[str, str] = field(default_factory=dict)
+
+
+@dataclass(frozen=True)
+class Audit:
+    """The audit of one board."""
+
+    board: Board
+    policy: str
+    results: tuple[ModeResult, ...]
+    findings: tuple[Finding, ...]
+    stresses: tuple[Stress, ...]
+    coverage: Coverage
+    complete: bool
+    nominal: bool = False
+    generic: tuple[str, ...] = ()
+
+    def fails(self, level: Level = "error", require_complete: bool = False) -> bool:
+        """Whether something stands at or above the level, or is missing where completeness is required."""
+        worst = max((rank(f.level) for f in self.findings), default=-1)
+        return worst >= rank(level) or (require_complete and not self.complete)
