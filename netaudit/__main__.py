@@ -1,0 +1,6 @@
+"""``python -m netaudit``."""
+
+from netaudit.cli.main import run
+
+if __name__ == "__main__":
+    run()
