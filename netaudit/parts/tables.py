@@ -172,6 +172,10 @@ def make_part(name: str, row: Mapping[str, Any], place: Place) -> Part:
         rough = f"{name} is a generic class ({row.get('source', 'no source stated')})"
     _spread(row.get("spread", {}), parameters, place)
     ratings, limits = _ratings(name, row, place, generic)
+    for key, value in row.get("ratings", {}).items():
+        # R_DS_on, V_GS_th and h_FE are listed among the ratings of a data sheet and are the model's as well
+        if key in PARAMETERS and PARAMETERS[key].at and key not in parameters:
+            parameters.update(read_parameter(key, value, place))
     return Part(
         name, kind, place, row.get("block"), parameters, words, points, ratings,
         {str(k): str(v) for k, v in row.get("pins", {}).items()}, limits, str(row.get("source", "")), error, rough, generic,
@@ -259,6 +263,8 @@ def _ratings(
             raise InputError(
                 f"part {name}: unknown rating {key}", place=place, mend=f"did you mean {near}?" if near else ""
             )
+        if key in PARAMETERS and PARAMETERS[key].at:
+            continue
         ratings[key] = read_rating(key, value, place, f"{name} ({place.file}:{place.line})", generic)
     return ratings, limits
 
