@@ -8,10 +8,15 @@ from netaudit.circuit.circuit import Circuit
 from netaudit.solve.certificate import certify
 from netaudit.solve.point import ModeResult, Point, Uniqueness
 from netaudit.solve.runaway import follow
+from netaudit.solve.further import further_points
 from netaudit.solve.settle import Settled, Solver
 from netaudit.solve.solved import Solved
+from netaudit.solve.stability import Stability, stability
 from netaudit.solve.structure import unique_by_structure
 from netaudit.solve.system import System
+
+#: unknowns up to which stability is looked at
+_LARGEST_DENSE = 400
 
 
 def operate(circuit: Circuit) -> ModeResult:
@@ -42,18 +47,34 @@ class Operation:
         proven, because = unique_by_structure(self.system)
         if not settled.converged[0]:
             return self._nothing(settled, because)
-        solved = settled.solved.pick(0)
-        certificate = certify(solved)
+        certificate = certify(settled.solved.pick(0))
         if not certificate.holds:
             failure = (
                 f"the iteration ended in a point whose pin currents do not sum to zero: "
                 f"{certificate.residual_current:.3g} A are left over on net {certificate.worst_net}"
             )
             return ModeResult(self.circuit, (), "searched", because, failure, certificate.worst_net)
-        self.boards = [settled.solved]
-        point = make_point(solved, settled, proven, self._gains(settled))
+        every = [settled]
+        if not proven and not followed.runaway:
+            further = further_points(self.solver, settled)
+            every = [settled, *further.settled]
+            because += further.said
+        self.boards = [one.solved for one in every]
+        points = tuple(self._point(one, proven) for one in every)
         uniqueness: Uniqueness = "proven" if proven else "searched"
-        return ModeResult(self.circuit, (point,), uniqueness, because, runaway=followed.runaway)
+        return ModeResult(self.circuit, points, uniqueness, because, runaway=followed.runaway)
+
+    def _point(self, settled: Settled, proven: bool) -> Point:
+        return make_point(settled.solved.pick(0), settled, self._stability(settled.solved, proven), self._gains(settled))
+
+    def _stability(self, board: Solved, proven: bool) -> Stability:
+        """Passive circuits need no numbers; others a dense Jacobian, which very large ones do not get."""
+        if proven:
+            return Stability(True, "all branches are strictly increasing and the rest is passive: it decays with any capacitances")
+        if self.system.n > _LARGEST_DENSE:
+            return Stability(None, "not decided: the circuit is too large for the test")
+        slope = board.num.branches.value(board.u)[1]
+        return stability(self.system.jacobian(board.num, slope)[0], self.system.is_node)
 
     def _gains(self, settled: Settled) -> dict[str, float]:
         """The thermal loop gain R_th dP/dT_j of every heated device, the circuit responding."""
@@ -71,18 +92,12 @@ class Operation:
         return ModeResult(self.circuit, (), "searched", because, failure, certificate.worst_net)
 
 
-def make_point(solved: Solved, settled: Settled, passive: bool, gains: dict[str, float]) -> Point:
-    """The reported point; ``passive``: increasing branches and passive linear parts only, which settles stability."""
+def make_point(solved: Solved, settled: Settled, stable: Stability, gains: dict[str, float]) -> Point:
+    """The reported point with its certificate."""
     system = solved.system
     certificate = certify(solved)
     nets = {net: float(solved.net(net)) for net in system.circuit.nets if net in system.net_of}
     temperatures = {d.name: float(solved.temperature[..., k]) for k, d in enumerate(system.devices)}
-    stable: bool | None = True if passive else None
-    because = (
-        "all branches are strictly increasing and the rest is passive: any capacitances make it decay"
-        if passive
-        else "not decided"
-    )
     return Point(
         nets,
         temperatures,
@@ -91,7 +106,7 @@ def make_point(solved: Solved, settled: Settled, passive: bool, gains: dict[str,
         int(settled.iterations[0]),
         certificate.residual_current,
         certificate.power_imbalance,
-        stable,
-        because,
+        stable.stable,
+        stable.because,
         gains,
     )
