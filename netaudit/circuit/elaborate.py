@@ -22,6 +22,7 @@ from netaudit.syntax.statements import (
     ChangeStatement,
     CoveredStatement,
     ExpectStatement,
+    ExportStatement,
     GroundStatement,
     ModeStatement,
     Netlist,
@@ -71,7 +72,7 @@ class Elaboration:
         self.blocks = self._blocks()
         self.opened = Opener(self.blocks, frozenset(self.grounds)).open(netlist.statements)
         self.raws: dict[str, RawDevice] = {}
-        for raw in self.opened.devices:
+        for raw in [*self._exported(), *self.opened.devices]:
             if raw.name in self.raws:
                 first = self.raws[raw.name].place
                 raise InputError(
@@ -100,6 +101,25 @@ class Elaboration:
                 raise InputError(f"block {s.name.text} is defined twice", place=s.name.place, mend="rename one of them")
             found[s.name.text] = s
         return found
+
+    def _exported(self) -> list[RawDevice]:
+        """Devices of included exports, the tables of one board taken together."""
+        exports = [s.export for s in self.netlist.statements if isinstance(s, ExportStatement)]
+        if not exports:
+            return []
+        from netaudit.circuit.mapping import map_export
+        from netaudit.syntax.tables import merged
+
+        tables = [e for e in exports if e.file.lower().endswith(".csv")]
+        drawn = [e for e in exports if not e.file.lower().endswith(".csv")]
+        devices: list[RawDevice] = []
+        for export in [*drawn, *([merged(tables)] if tables else [])]:
+            mapped = map_export(export, self.table)
+            devices += mapped.devices
+            self.cautions += mapped.remarks
+            for finding in mapped.findings:
+                self.builder.findings[(finding.rule, finding.device or "")] = finding
+        return devices
 
     def _net_names(self) -> tuple[str, ...]:
         nets = dict.fromkeys(self.grounds)

@@ -9,10 +9,18 @@ from pathlib import Path
 
 from netaudit.failure import InputError
 from netaudit.place import Place
+from netaudit.syntax.export import Export
 from netaudit.syntax.lines import LogicalLine, logical_lines
 from netaudit.syntax.parse import Mark, Parser
 from netaudit.syntax.paths import below_root, project_root
-from netaudit.syntax.statements import BlockStatement, ModeStatement, Netlist, PartsStatement, Statement
+from netaudit.syntax.statements import (
+    BlockStatement,
+    ExportStatement,
+    ModeStatement,
+    Netlist,
+    PartsStatement,
+    Statement,
+)
 
 LARGEST_FILE = 64 << 20
 _EXPORTS = (".edf", ".edn", ".edif", ".csv")
@@ -136,15 +144,31 @@ def _mark(
 def _include(mark: Mark, reading: _Reading, chain: tuple[Place, ...], above: tuple[str, ...]) -> None:
     path = below_root(mark.name.text, mark.place, reading.root)
     if path.lower().endswith(_EXPORTS):
-        raise InputError(
-            "schematic exports cannot be included yet", place=mark.name.place, mend="include a netlist of this language"
-        )
+        reading.statements.append(_export(path, mark, reading))
+        return
     resolved = str(Path(path).resolve())
     if resolved in above:
         raise InputError(f"{mark.name.text} includes itself", place=mark.name.place, mend="break the cycle")
     if len(above) > 60:
         raise InputError("includes nested more than 60 deep", place=mark.name.place)
     _read_file(path, path, reading, (*chain, replace(mark.place, chain=())), (*above, resolved))
+
+
+def _export(path: str, mark: Mark, reading: _Reading) -> ExportStatement:
+    data = read_bytes(path, path, mark.name.place)
+    reading.files[path] = hashlib.sha256(data).hexdigest()
+    return ExportStatement(read_export(data, path), mark.place)
+
+
+def read_export(data: bytes, shown: str) -> Export:
+    """An export by the ending of its name: EDIF 2 0 0, or a CSV table."""
+    if shown.lower().endswith(".csv"):
+        from netaudit.syntax.tables import read_table
+
+        return read_table(data, shown)
+    from netaudit.syntax.edif import read_edif
+
+    return read_edif(data, shown)
 
 
 def _closed(mark: Mark, body: list[Statement]) -> Statement:

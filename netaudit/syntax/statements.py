@@ -6,6 +6,7 @@ from collections.abc import Mapping
 from dataclasses import dataclass, field
 
 from netaudit.place import Place
+from netaudit.syntax.export import Export
 
 
 @dataclass(frozen=True, slots=True)
@@ -169,8 +170,17 @@ class BlockStatement:
     place: Place
 
 
+@dataclass(frozen=True, slots=True)
+class ExportStatement:
+    """``include`` of a schematic export: its content, flat."""
+
+    export: Export
+    place: Place
+
+
 Statement = (
     DeviceStatement
+    | ExportStatement
     | TitleStatement
     | PartsStatement
     | GroundStatement
