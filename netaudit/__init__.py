@@ -1,16 +1,16 @@
 """netaudit: finds the DC operating points of a netlist and checks every part against its ratings.
 
-    >>> import netaudit
-    >>> board = netaudit.loads('''netlist 1
-    ... ground GND
-    ... PS1 supply 12V +:VIN -:GND
-    ... R1 resistor 1k 1% P_tot=250mW 1:VIN 2:M
-    ... R2 resistor 1k 1% P_tot=250mW 1:M 2:GND
-    ... ''')
-    >>> board.solve()[0].points[0].nets["M"]
-    6.0
-    >>> board.audit().fails()
-    False
+>>> import netaudit
+>>> board = netaudit.loads('''netlist 1
+... ground GND
+... PS1 supply 12V +:VIN -:GND
+... R1 resistor 1k 1% P_tot=250mW 1:VIN 2:M
+... R2 resistor 1k 1% P_tot=250mW 1:M 2:GND
+... ''')
+>>> board.solve()[0].points[0].nets["M"]
+6.0
+>>> board.audit().fails()
+False
 """
 
 from __future__ import annotations

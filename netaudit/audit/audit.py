@@ -2,16 +2,18 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass, replace
 
 from netaudit.audit.conduction import never_conducts
+from netaudit.audit.context import CONDUCTS, Context, context
 from netaudit.audit.coverage import coverage, fitted, rating_notes, spread_note
 from netaudit.audit.expectation import expectation_tasks
+from netaudit.audit.feeding import upstream
 from netaudit.audit.lint import lint, ordered
-from netaudit.audit.points import CONDUCTS, point_tasks
+from netaudit.audit.points import point_tasks
 from netaudit.audit.records import Audit, Stress
-from netaudit.audit.stress import Watched, findings_of, stress_of, watched
+from netaudit.audit.stress import Watched, beyond, corner_text, findings_of, stress_of, watched
 from netaudit.audit.tasks import Task
 from netaudit.audit.thermal import thermal_findings
 from netaudit.audit.worst import Explorer
@@ -25,49 +27,56 @@ from netaudit.solve.solved import Solved
 
 @dataclass(frozen=True)
 class Options:
-    """How to audit: the policy, nominal values only, and which modes (all when none is named)."""
+    """How to audit: the policy, nominal values only, and whether some modes are left out."""
 
     policy: Policy
     nominal: bool = False
-    modes: tuple[str, ...] = ()
+    partial: bool = False
 
 
 @dataclass
 class ModeAudit:
-    """What one mode gave."""
+    """What one mode gave; ``units`` of the keys that stand in its corners."""
 
     result: ModeResult
     stresses: list[Stress]
     findings: list[Finding]
     watched: list[Watched]
+    units: dict[str, str]
 
 
 def audit(board: Board, policy: str | Policy = "none", nominal: bool = False, modes: Sequence[str] = ()) -> Audit:
-    """The audit.  ``policy`` by name, file or as loaded; ``nominal`` looks at nominal values only."""
+    """The audit of a board.
+
+    ``policy`` by name, file or as loaded; ``nominal`` looks at nominal values only; ``modes``: only these.  Raises InputError for a policy that cannot be read.
+    """
     loaded = load_policy(policy) if isinstance(policy, str) else policy
-    options = Options(loaded, nominal, tuple(modes))
-    operations = [(c, Operation(c)) for c in board.circuits if not modes or c.mode in modes]
-    results = [(circuit, op, op.result()) for circuit, op in operations]
-    regulating = _regulating(board, [r for _, _, r in results])
-    audits = [_audit_mode(board, op, result, options, regulating) for _, op, result in results]
+    chosen = tuple(c for c in board.circuits if not modes or c.mode in modes)
+    options = Options(loaded, nominal, len(chosen) < len(board.circuits))
+    board = replace(board, circuits=chosen)
+    operations = [(op := Operation(c), op.result()) for c in chosen]
+    known = context(board, [result for _, result in operations])
+    audits = [_audit_mode(board, op, result, options, known) for op, result in operations]
     return _joined(board, audits, options)
 
 
 def _joined(board: Board, audits: Sequence[ModeAudit], options: Options) -> Audit:
-    items: dict[tuple[str, str], Watched] = {}
+    items: dict[object, Watched] = {}
     for one in audits:
         for item in one.watched:
-            items.setdefault((item.device.name, item.check.quantity), item)
-    found = [*lint(board), *(f for one in audits for f in one.findings)]
-    found += never_conducts(board, [one.result for one in audits])
-    found += [*rating_notes(list(items.values())), *spread_note(board, options.nominal)]
-    covered = coverage(board, list(items.values()))
-    unsolved = any(f.rule == "point/none-found" for f in found)
+            items.setdefault(item.key, item)
+    every = list(items.values())
     stresses = [s for one in audits for s in one.stresses]
-    lower = {f.device for f in found if f.rule == "part/no-current"}
-    if lower:
-        stresses = [replace(s, lower_bound=s.device in _upstream(board, s.mode)) for s in stresses]
-    generic = tuple(sorted({d.part.name for d in fitted(board).values() if d.part is not None and d.part.generic}))
+    found = [*lint(board), *(f for one in audits for f in one.findings)]
+    if not options.partial:
+        lit = {s.device for s in stresses if s.quantity == "forward-current" and s.worst > CONDUCTS}
+        found += never_conducts([one.result for one in audits], lit)
+    found += [*rating_notes(every), *spread_note(board, options.nominal)]
+    covered = coverage(board, every)
+    unsolved = any(f.rule == "point/none-found" for f in found)
+    if any(f.rule == "part/no-current" for f in found):
+        fed = {c.mode: upstream(c) for c in board.circuits}
+        stresses = [replace(s, lower_bound=s.device in fed[s.mode]) for s in stresses]
     return Audit(
         board,
         options.policy.name,
@@ -77,8 +86,18 @@ def _joined(board: Board, audits: Sequence[ModeAudit], options: Options) -> Audi
         covered,
         not covered.not_audited and not unsolved,
         options.nominal,
-        generic,
+        tuple(sorted({d.part.name for d in fitted(board).values() if d.part is not None and d.part.generic})),
+        _without_row(every, options.policy),
+        {key: unit for one in audits for key, unit in one.units.items()},
     )
+
+
+def _without_row(items: Sequence[Watched], policy: Policy) -> tuple[str, ...]:
+    """``led junction-temperature``: checks that were made with the factor 1 because the policy has no row for them."""
+    if policy.name == "none":
+        return ()
+    silent = (i for i in items if not i.limit.missing and i.limit.row is None)
+    return tuple(sorted({f"{i.device.kind} {i.check.quantity}" for i in silent}))
 
 
 def _distinct(found: Iterable[Finding]) -> Iterable[Finding]:
@@ -93,64 +112,34 @@ def _distinct(found: Iterable[Finding]) -> Iterable[Finding]:
 
 
 def _worst_first(s: Stress) -> tuple[int, float]:
-    """Stresses without a limit above zero but with a value come first, then by ratio, then those without rating."""
+    """Where the limit is 0 comes first, then by ratio, then what has no rating."""
     if s.ratio is not None:
         return (1, -s.ratio)
-    return (0, 0.0) if s.limit is not None and s.worst > 0 else (2, 0.0)
+    return (0, -s.worst) if s.limit is not None else (2, 0.0)
 
 
-def _upstream(board: Board, mode: str) -> set[str]:
-    """Parts that feed a part which draws an unknown current."""
-    from netaudit.audit.feeding import upstream
-
-    circuit = next(c for c in board.circuits if c.mode == mode)
-    return upstream(circuit)
-
-
-def _regulating(board: Board, results: Sequence[ModeResult]) -> frozenset[str]:
-    """References that regulate: at their knee or above in some mode, or with an ``expect`` across them."""
-    names = set()
-    for result in results:
-        for device in result.circuit.devices:
-            if device.kind not in ("zener", "shunt-reference") or device.missing:
-                continue
-            symbol = "I_ZK" if device.kind == "zener" else "I_K_min"
-            rating = device.ratings.get(symbol)
-            knee = rating.nominal if rating is not None else device.nominal(symbol, CONDUCTS)
-            if any(float(p.view(device.name).i("K")) >= knee for p in result.points):
-                names.add(device.name)
-            ends = {device.pins["A"], device.pins["K"]}
-            for wanted in board.expectations:
-                nets = set(wanted.nets) if len(wanted.nets) > 1 else set(wanted.nets) | set(result.circuit.grounds[:1])
-                if wanted.quantity == "voltage" and nets == ends:
-                    names.add(device.name)
-    return frozenset(names)
-
-
-def _audit_mode(
-    board: Board, operation: Operation, result: ModeResult, options: Options, regulating: frozenset[str]
-) -> ModeAudit:
+def _audit_mode(board: Board, operation: Operation, result: ModeResult, options: Options, known: Context) -> ModeAudit:
     items = watched(operation.solver, options.policy)
-    out = ModeAudit(result, [], [], items)
+    out = ModeAudit(result, [], [], items, {})
     if not result.points:
         out.findings.append(_none_found(result))
         return out
     out.findings += _several(result)
+    tasks = [
+        *point_tasks(operation.circuit, known),
+        *expectation_tasks(board, operation.circuit, frozenset(operation.system.index_of)),
+    ]
     for nominal, point in zip(operation.boards, result.points, strict=True):
         if point.stable is False:
             continue
         explorer = Explorer(operation.solver, nominal, options.nominal)
-        tasks = [
-            *point_tasks(operation.circuit, board, regulating),
-            *expectation_tasks(board, operation.circuit, frozenset(operation.system.index_of)),
-        ]
         _explore(explorer, items, tasks, out, None)
         out.findings += thermal_findings(operation, explorer, result, point)
+    _variants(operation.circuit, out, options)
     out.stresses = _worst_of(out.stresses)
-    _variants(board, operation.circuit, out, options)
     devices = {d.name: d for d in operation.circuit.devices}
     for stress in out.stresses:
-        out.findings += findings_of(stress, devices[stress.device])
+        out.findings += findings_of(stress, devices[stress.device], out.units)
     return out
 
 
@@ -158,43 +147,50 @@ def _explore(
     explorer: Explorer, items: Sequence[Watched], tasks: Sequence[Task], out: ModeAudit, variant: str | None
 ) -> None:
     """All checks and tasks of a mode in one exploration."""
-    spread = [(k, objective) for k, item in enumerate(items) for objective in item.objectives()]
-    objectives = [objective for _, objective in spread] + [task.objective for task in tasks]
-    extremes = explorer.extremes(objectives)
+    out.units |= {v.key: v.quantity.unit for v in explorer.spans}
+    objectives = [item.objectives() for item in items]
+    extremes = explorer.extremes([*(o for some in objectives for o in some), *(task.objective for task in tasks)])
     nominal: Solved = explorer.boards[0].pick(0)
-    mode = out.result.mode
-    for k, item in enumerate(items):
-        own = [e for (number, _), e in zip(spread, extremes, strict=False) if number == k]
-        out.stresses.append(stress_of(item, own, nominal, mode, variant))
-    for task, extreme in zip(tasks, extremes[len(spread) :], strict=True):
-        out.findings += task.verdict(extreme, nominal)
+    left = iter(extremes)
+    for item, some in zip(items, objectives, strict=True):
+        own = [next(left) for _ in some]
+        out.stresses.append(stress_of(item, own, nominal, out.result.mode, variant))
+    for task in tasks:
+        out.findings += task.verdict(next(left), nominal)
     for corner in explorer.failures[:1]:
-        where = ", ".join(f"{key} = {v:.5g}" for key, v in corner.items())
-        out.findings.append(
-            Finding(
-                "point/none-found",
-                "error",
-                f"no operating point was found at the corner {where}; tried every remedy there",
-                mode=mode,
-                corner=corner,
-                file=explorer.solver.system.circuit.devices[0].place.file,
-                variant=variant,
-            )
-        )
+        out.findings.append(_none_at(out, corner, variant))
+
+
+def _none_at(out: ModeAudit, corner: Mapping[str, float], variant: str | None) -> Finding:
+    place = out.result.circuit.devices[0].place
+    return Finding(
+        "point/none-found",
+        "error",
+        f"mode {out.result.mode}: no operating point was found at the corner {corner_text(corner, out.units)}; every "
+        "remedy was tried: look there with those values set",
+        mode=out.result.mode,
+        corner=corner,
+        file=place.file,
+        line=place.line,
+        variant=variant,
+    )
 
 
 def _worst_of(stresses: Sequence[Stress]) -> list[Stress]:
-    """One entry for each device, quantity and variant: the worst of several operating points."""
-    best: dict[tuple[str, str, str | None], Stress] = {}
+    """One entry for each device, quantity, pin and variant: the worst of several operating points and directions."""
+    best: dict[tuple[str, str, str | None, str | None], Stress] = {}
     for s in stresses:
-        key = (s.device, s.quantity, s.variant)
-        old = best.get(key)
-        if old is None or (s.ratio or 0.0, s.worst) > (old.ratio or 0.0, old.worst):
+        key = (s.device, s.quantity, s.pin, s.variant)
+        if key not in best or _badness(s) > _badness(best[key]):
             best[key] = s
     return list(best.values())
 
 
-def _variants(board: Board, circuit: Circuit, out: ModeAudit, options: Options) -> None:
+def _badness(s: Stress) -> tuple[bool, float, float]:
+    return (beyond(s) is not None and s.ratio is None, s.ratio or 0.0, s.worst * s.direction)
+
+
+def _variants(circuit: Circuit, out: ModeAudit, options: Options) -> None:
     """The mode once more for each supply that is fed back, with that supply neither delivering nor absorbing."""
     fed = {f.device for f in out.findings if f.rule == "point/back-feed"}
     for name in sorted(n for n in fed if n is not None):

@@ -2,11 +2,11 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Sequence
+from collections.abc import Iterable, Sequence, Set
 
-from netaudit.audit.points import CONDUCTS
+from netaudit.audit.context import CONDUCTS
 from netaudit.audit.rule import about
-from netaudit.circuit.circuit import Board, Circuit
+from netaudit.circuit.circuit import Circuit
 from netaudit.circuit.graph import conducting
 from netaudit.devices import KINDS
 from netaudit.devices.base import Device
@@ -16,12 +16,12 @@ from netaudit.solve.point import ModeResult
 _LIGHTS = frozenset({"led", "optocoupler"})
 
 
-def never_conducts(board: Board, results: Sequence[ModeResult]) -> Iterable[Finding]:
-    """Findings over all solved modes together."""
+def never_conducts(results: Sequence[ModeResult], lit: Set[str]) -> Iterable[Finding]:
+    """Findings over all solved modes together; ``lit``: devices known to conduct at some corner."""
     solved = [r for r in results if r.points]
     if not solved:
         return
-    conducted: set[str] = set()
+    conducted = set(lit)
     present: dict[str, Device] = {}
     for result in solved:
         for device in result.circuit.devices:
@@ -60,7 +60,9 @@ def _alone_feeds(circuit: Circuit, name: str) -> bool:
         for group in conducting(device):
             for pin in group[1:]:
                 graph.add_edge(device.pins[group[0]], device.pins[pin], device=device.name)
-    sources = {d.name for d in circuit.devices if d.kind in ("supply", "current-source") and d.words.get("state") != "off"}
+    sources = {
+        d.name for d in circuit.devices if d.kind in ("supply", "current-source") and d.words.get("state") != "off"
+    }
     with_it = _in_loop(graph, sources)
     edges = [(a, b, k) for a, b, k, d in graph.edges(keys=True, data="device") if d == name]
     graph.remove_edges_from(edges)

@@ -67,7 +67,10 @@ def rating_notes(items: Sequence[Watched]) -> Iterable[Finding]:
         needed = [c for c in checks if c.check.required]
         tail = ": it counts as not audited until that is stated" if needed else ""
         yield Finding(
-            "part/no-rating", "note", f"{device.name}: not checked for lack of a rating: {said}{tail}", **about(device)  # type: ignore[arg-type]
+            "part/no-rating",
+            "note",
+            f"{device.name}: not checked for lack of a rating: {said}{tail}",
+            **about(device),  # type: ignore[arg-type]
         )
 
 
@@ -103,7 +106,7 @@ def coverage(board: Board, items: Sequence[Watched]) -> Coverage:
     missing = sum(1 for item in items if item.limit.missing)
     return Coverage(
         len(devices),
-        len(devices) - len(reasons),
+        sum(1 for name, d in devices.items() if name not in reasons and not d.covered),
         sum(1 for d in devices.values() if d.covered),
         tuple(unmodelled),
         len(items) - missing,

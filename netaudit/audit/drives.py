@@ -7,8 +7,7 @@ from collections.abc import Iterable, Iterator
 import numpy as np
 
 from netaudit.audit.context import CONDUCTS, POWERED, REACHED, Context
-from netaudit.audit.rule import made
-from netaudit.audit.tasks import Task
+from netaudit.audit.tasks import Task, made
 from netaudit.audit.worst import Extreme
 from netaudit.circuit.circuit import Circuit
 from netaudit.devices.base import Array, Device
@@ -105,15 +104,20 @@ def _weak_gate(extreme: Extreme, device: Device, circuit: Circuit, needed: float
 
 def amplifier_tasks(device: Device, circuit: Circuit) -> Iterator[Task]:
     """Output at its swing, output at its current limit, inputs beyond the rails (each judged where powered)."""
-    for question, said in _AMPLIFIER.items():
-        if question == "limit" and "limit" not in device.values:
-            continue
-        yield Task(lambda b, q=question: _amplifier(b, device, q), lambda e, n, t=said: _at_limit(e, device, circuit, t))  # type: ignore[misc]  # the defaults bind the loop's values
+    for question in _AMPLIFIER:
+        if question != "limit" or "limit" in device.values:
+            yield _amplifier_task(device, circuit, question)
+
+
+def _amplifier_task(device: Device, circuit: Circuit, question: str) -> Task:
+    return Task(
+        lambda b: _amplifier(b, device, question), lambda e, n: _at_limit(e, device, circuit, _AMPLIFIER[question])
+    )
 
 
 _AMPLIFIER = {
-    "swing": "its output stands at the end of its swing: the feedback no longer holds; give it more supply or less gain",
-    "limit": "its output delivers its current limit: the feedback no longer holds; lighten its load",
+    "swing": "its output stands at the end of its swing and feedback no longer holds: give it more supply or less gain",
+    "limit": "its output delivers its current limit and feedback no longer holds: lighten its load",
     "inputs": "an input is beyond the supply rails: divide the input down or choose another supply",
 }
 
@@ -164,7 +168,7 @@ def _misfit(extreme: Extreme, device: Device, circuit: Circuit, on: bool, limit:
     said = "on, but too little to hold it" if on else "off, but enough to pull it in"
     yield made(
         "point/coil-state", "warning", device, circuit.mode,
-        f"its coil gets {engineering(volts, 'V')}, and its contact is given as {said}: set the state that fits, or mend "
-        "the drive of the coil",
+        f"its coil gets {engineering(volts, 'V')}, and its contact is given as {said}: set the state that fits, or "
+        "mend the drive of the coil",
         extreme.corner, quantity="voltage", value=volts, limit=limit, unit="V",
     )  # fmt: skip

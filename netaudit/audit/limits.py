@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Callable, Iterator
 from dataclasses import dataclass
 
 import numpy as np
@@ -18,7 +19,7 @@ _TEMPERATURES = {True: (70.0, 155.0), False: (25.0, math.nan)}
 
 @dataclass(frozen=True)
 class Limit:
-    """The rating of one check of one device; ``why`` says what is missing when it cannot be made."""
+    """The rating of one check of one device; ``missing`` names the symbol that is not known when it cannot be made."""
 
     device: Device
     check: Check
@@ -92,6 +93,43 @@ class Limit:
     def row(self) -> Row | None:
         """The policy's row for this check, None where it has none."""
         return self.policy.row(owners(self.device), self.check.symbols)
+
+
+#: pins that a part's absolute limits refer to, if it has one of them; else the reference net
+GROUND_PINS = ("GND", "VSS", "V-", "-", "G")
+
+
+@dataclass(frozen=True)
+class PinLimit:
+    """An absolute limit of one pin: ``bound`` volts in the direction that is measured; no policy speaks of it."""
+
+    bound: float
+    missing: str = ""
+    symbols: tuple[str, ...] = ()
+    row: Row | None = None
+
+    def rating(self, view: View) -> Array:
+        """The bound, whatever the temperature."""
+        return np.broadcast_to(np.asarray(self.bound), np.shape(view.ambient))
+
+    def limit(self, view: View) -> Array:
+        """The same."""
+        return self.rating(view)
+
+
+def pin_checks(device: Device) -> Iterator[tuple[Check, PinLimit, str, float]]:
+    """The two checks of every pin with limits, each with its pin and direction (1 up, -1 down)."""
+    limits = device.part.pin_limits if device.part is not None else {}
+    ground = next((p for p in GROUND_PINS if p in device.pins), None)
+    for pin, (low, high) in limits.items():
+        if pin in device.pins and pin not in device.open_pins:
+            for direction, bound in ((1.0, high), (-1.0, -low)):
+                measure = _pin_measure(pin, ground, direction)
+                yield Check("pin-voltage", "V", (), measure), PinLimit(bound), pin, direction
+
+
+def _pin_measure(pin: str, ground: str | None, direction: float) -> Callable[[View], Array]:
+    return lambda view: np.asarray(direction * (view.v(pin) - (view.v(ground) if ground is not None else 0.0)))
 
 
 def value(check: Check, view: View) -> Array:

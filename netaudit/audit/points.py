@@ -2,52 +2,45 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterable, Iterator
-from typing import Any
+from collections.abc import Iterable, Iterator
 
 import numpy as np
 
-from netaudit.audit.rule import about
-from netaudit.audit.tasks import Task
+from netaudit.audit.context import CONDUCTS, POWERED, REACHED, Context
+from netaudit.audit.drives import amplifier_tasks, bipolar_tasks, gate_tasks, relay_tasks
+from netaudit.audit.references import reference_tasks, regulator_tasks
+from netaudit.audit.tasks import Task, made
 from netaudit.audit.worst import Extreme
-from netaudit.circuit.circuit import Board, Circuit
+from netaudit.circuit.circuit import Circuit
 from netaudit.devices.base import Array, Device
 from netaudit.devices.supply import limiting
-from netaudit.finding import Finding, Level
+from netaudit.finding import Finding
 from netaudit.quantities.write import engineering
 from netaudit.solve.solved import Solved
 
-#: a junction conducts above this, A
-CONDUCTS = 10e-6
-#: a limit is reached at this share of it
-REACHED = 0.999
-#: an off supply's net above this is fed, V
-_FED_VOLTS = 0.3
-
-Margin = Callable[[Solved], Array]
+#: what a supply with ``sinks=no`` is not asked about: leakage below this, A
+_NOTHING = 1e-9
 
 
-def point_tasks(circuit: Circuit, board: Board, regulating: frozenset[str]) -> Iterator[Task]:
-    """Tasks of all point rules of a mode; ``regulating``: references that regulate in some mode or are expected to."""
-    from netaudit.audit.device_points import device_tasks
-
+def point_tasks(circuit: Circuit, known: Context) -> Iterator[Task]:
+    """Tasks of all point rules of a mode."""
     for device in circuit.devices:
         if device.missing:
             continue
         if device.kind == "supply":
             yield from _supply_tasks(device, circuit)
-        elif device.kind == "zener" and "I_ZK" in {**device.ratings, **device.values}:
-            yield from _zener_tasks(device, circuit, regulating)
-        yield from device_tasks(device, circuit, regulating)
-
-
-def make(
-    rule: str, level: Level, device: Device, circuit: Circuit, text: str, extreme: Extreme, **fields: Any
-) -> Finding:
-    """A finding of a point rule at the corner of an extreme."""
-    return Finding(
-        rule, level, f"{device.name}: {text}", mode=circuit.mode, corner=extreme.corner, **about(device), **fields
-    )
+        elif device.kind in ("zener", "shunt-reference"):
+            yield from reference_tasks(device, circuit, known)
+        elif device.kind in ("regulator", "converter"):
+            yield from regulator_tasks(device, circuit)
+        elif device.kind in ("npn", "pnp"):
+            yield from bipolar_tasks(device, circuit)
+        elif device.kind in ("nmos", "pmos"):
+            yield from gate_tasks(device, circuit)
+        elif device.kind == "opamp":
+            yield from amplifier_tasks(device, circuit)
+        elif device.kind == "relay":
+            yield from relay_tasks(device, circuit, known)
 
 
 def _supply_tasks(device: Device, circuit: Circuit) -> Iterator[Task]:
@@ -75,11 +68,11 @@ def _limiting_finding(extreme: Extreme, device: Device, circuit: Circuit) -> Ite
         return
     limit = float(view.value("limit"))
     volts = float(view.v("+") - view.v("-"))
-    yield make(
-        "point/supply-limiting", "error", device, circuit,
+    yield made(
+        "point/supply-limiting", "error", device, circuit.mode,
         f"the supply is in its current limit of {engineering(limit, 'A')} and falls to {engineering(volts, 'V')}: "
         "raise the limit, lower the load, or write limiting=ok if that is meant",
-        extreme, quantity="current", value=limit, limit=limit, unit="A",
+        extreme.corner, quantity="current", value=limit, limit=limit, unit="A",
     )  # fmt: skip
 
 
@@ -90,24 +83,24 @@ def _pushed(board: Solved, device: Device) -> Array:
 
 
 def _back_feed_finding(extreme: Extreme, device: Device, circuit: Circuit) -> Iterable[Finding]:
-    if extreme.value <= 1e-9 * max(device.nominal("sinks", 0.0), 1e-9):
+    allowed = device.nominal("sinks", 0.0)
+    if extreme.value <= (1e-9 * allowed or _NOTHING):
         return
     view = extreme.board.view(device.name)
     pushed = float(_sign(device) * view.i("+"))
-    allowed = float(view.value("sinks"))
     pin = "+" if _sign(device) > 0 else "-"
-    yield make(
-        "point/back-feed", "error", device, circuit,
+    yield made(
+        "point/back-feed", "error", device, circuit.mode,
         f"{engineering(pushed, 'A')} are pushed back into the supply, which can absorb {engineering(allowed, 'A')}"
         f"{_by(extreme.board, device.pins[pin], device)}: block the path with a diode, or state sinks=",
-        extreme, net=device.pins["+"], quantity="current", value=pushed, limit=allowed, unit="A",
+        extreme.corner, net=device.pins["+"], quantity="current", value=pushed, limit=allowed, unit="A",
     )  # fmt: skip
 
 
 def _fed(board: Solved, device: Device) -> Array:
     """How far an off supply's net is above 0.3 V while more than 10 uA reach it, in volts (negative: not fed)."""
     view = board.view(device.name)
-    volts = _sign(device) * (view.v("+") - view.v("-")) - _FED_VOLTS
+    volts = _sign(device) * (view.v("+") - view.v("-")) - POWERED
     return np.where(feeding(board, device.pins["+"], device.name) > CONDUCTS, volts, np.minimum(volts, -1e-9))
 
 
@@ -124,11 +117,11 @@ def _fed_finding(extreme: Extreme, device: Device, circuit: Circuit) -> Iterable
         return
     view = extreme.board.view(device.name)
     volts = float(view.v("+") - view.v("-"))
-    yield make(
-        "point/back-feed", "error", device, circuit,
+    yield made(
+        "point/back-feed", "error", device, circuit.mode,
         f"the supply is off, but its net {device.pins['+']} is fed to {engineering(volts, 'V')}"
         f"{_by(extreme.board, device.pins['+'], device)}: block the path with a diode or switch it",
-        extreme, net=device.pins["+"], quantity="voltage", value=volts, limit=_FED_VOLTS, unit="V",
+        extreme.corner, net=device.pins["+"], quantity="voltage", value=volts, limit=POWERED, unit="V",
     )  # fmt: skip
 
 
@@ -160,34 +153,3 @@ def feed_path(board: Solved, net: str, besides: str) -> list[str]:
         entering = max(system.pin_numbers[number].items(), key=lambda item: board.handle_sums[item[1]])
         net = device.pins[entering[0]]
     return path
-
-
-def _zener_tasks(device: Device, circuit: Circuit, regulating: frozenset[str]) -> Iterator[Task]:
-    if device.words.get("use") == "clamp":
-        return
-    knee = device.ratings["I_ZK"].nominal if "I_ZK" in device.ratings else device.nominal("I_ZK")
-    yield Task(
-        lambda b: knee - b.view(device.name).i("K"),
-        lambda e, n: _starved(e, n, device, circuit, knee, regulating),
-    )
-
-
-def _starved(
-    extreme: Extreme, nominal: Solved, device: Device, circuit: Circuit, knee: float, regulating: frozenset[str]
-) -> Iterable[Finding]:
-    view = extreme.board.view(device.name)
-    current = float(view.i("K"))
-    if current >= knee * (1 - 1e-9):
-        return
-    now = nominal.view(device.name)
-    powered = float(now.v("K") - now.v("A")) > 0.5 * device.nominal("V_Z", 0.0) or float(now.i("K")) > CONDUCTS
-    if not powered and device.name not in regulating:
-        return
-    if device.name not in regulating and float(now.i("K")) <= CONDUCTS:
-        return
-    yield make(
-        "point/zener-starved", "warning", device, circuit,
-        f"its current falls to {engineering(max(current, 0.0), 'A')}, below the knee of {engineering(knee, 'A')}: "
-        "it no longer holds its voltage; lower the series resistance, or write use=clamp if it is meant to stay off",
-        extreme, quantity="current", value=current, limit=knee, unit="A",
-    )  # fmt: skip

@@ -17,7 +17,8 @@ class Stress:
 
     ``rating`` is the maker's value at the actual temperature, ``limit`` the policy's share of it, ``ratio`` value over
     limit (None where there is no limit, or where it is 0).  ``variant`` names the second solution after a back-feed.
-    ``row`` and ``document`` say which policy row made the limit.
+    ``row`` and ``document`` say which policy row made the limit.  ``pin`` is named where a pin has limits of its own,
+    ``direction`` is -1 for its lower one (the value is then signed).
     """
 
     device: str
@@ -38,6 +39,8 @@ class Stress:
     row: str = ""
     document: str = ""
     origin: str = ""
+    pin: str | None = None
+    direction: float = 1.0
 
 
 @dataclass(frozen=True)
@@ -56,7 +59,11 @@ class Coverage:
 
 @dataclass(frozen=True)
 class Audit:
-    """The audit of one board."""
+    """The audit of one board.
+
+    ``generic``: parts whose rows are generic classes; ``without_row``: quantities of which the policy does not speak
+    (their factor is 1); ``units`` of the keys that stand in corners.
+    """
 
     board: Board
     policy: str
@@ -67,6 +74,8 @@ class Audit:
     complete: bool
     nominal: bool = False
     generic: tuple[str, ...] = ()
+    without_row: tuple[str, ...] = ()
+    units: Mapping[str, str] = field(default_factory=dict)
 
     def fails(self, level: Level = "error", require_complete: bool = False) -> bool:
         """Whether something stands at or above the level, or is missing where completeness is required."""

@@ -7,8 +7,7 @@ from collections.abc import Iterable, Iterator
 import numpy as np
 
 from netaudit.audit.context import CONDUCTS, POWERED, Context, knee
-from netaudit.audit.rule import made
-from netaudit.audit.tasks import Task
+from netaudit.audit.tasks import Task, made
 from netaudit.audit.worst import Extreme
 from netaudit.circuit.circuit import Circuit
 from netaudit.devices.base import Array, Device

@@ -2,36 +2,44 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
 
 import numpy as np
 
-from netaudit.audit.limits import Limit, value
+from netaudit.audit.limits import Limit, PinLimit, pin_checks, value
 from netaudit.audit.records import Stress
-from netaudit.audit.rule import about
+from netaudit.audit.tasks import made
 from netaudit.audit.worst import Extreme, Objective
 from netaudit.devices import KINDS
 from netaudit.devices.base import Array, Check, Device
-from netaudit.finding import Finding
+from netaudit.finding import Finding, Level
 from netaudit.parts.policy import Policy
 from netaudit.quantities.write import engineering
 from netaudit.solve.settle import Solver
 from netaudit.solve.solved import Solved
 
-#: rounding that still counts as being exactly at a rating
+#: rounding that still counts as being exactly at a rating, relative and in SI units
 _EXACT = 1e-9
+_FLOOR = 1e-12
 #: reverse voltage that a polarised capacitor may see beyond what it allows, V
 _REVERSE = 0.01
 
 
 @dataclass(frozen=True)
 class Watched:
-    """One check of one device in a mode."""
+    """One check of one device in a mode; ``pin`` and ``direction`` (-1: the lower limit) for limits of a pin."""
 
     device: Device
     check: Check
-    limit: Limit
+    limit: Limit | PinLimit
+    pin: str | None = None
+    direction: float = 1.0
+
+    @property
+    def key(self) -> tuple[str, str, str | None, float]:
+        """What tells this check from the others of a board."""
+        return (self.device.name, self.check.quantity, self.pin, self.direction)
 
     def objectives(self) -> list[Objective]:
         """What is maximised: value over limit where there is one, else the value; both directions where both count."""
@@ -55,11 +63,12 @@ def watched(solver: Solver, policy: Policy) -> list[Watched]:
     """Every check of a mode's devices, in the order of the netlist."""
     heated = {solver.system.devices[k].name for k in solver.heat.devices}
     on_path = {name for path in solver.system.circuit.heat_paths for name in path.devices}
-    return [
-        Watched(d, c, Limit(d, c, policy, d.name in heated, d.name in on_path))
-        for d in solver.system.devices
-        for c in KINDS[d.kind].checks(d)
-    ]
+    out = []
+    for d in solver.system.devices:
+        checks = KINDS[d.kind].checks(d)
+        out += [Watched(d, c, Limit(d, c, policy, d.name in heated, d.name in on_path)) for c in checks]
+        out += [Watched(d, *rest) for rest in pin_checks(d)]
+    return out
 
 
 def stress_of(item: Watched, extremes: Sequence[Extreme], nominal: Solved, mode: str, variant: str | None) -> Stress:
@@ -78,52 +87,58 @@ def stress_of(item: Watched, extremes: Sequence[Extreme], nominal: Solved, mode:
         row, document = (str(found), found.document) if found is not None else ("", "")
         symbol = next(iter(item.limit.symbols), item.check.symbols[0])
     rated = item.device.ratings.get(symbol)
+    way = item.direction
     return Stress(
-        item.device.name, item.check.quantity, item.check.unit, now, at_worst, rating, limit, ratio, mode,
-        worst.corner, worst.proof, worst.bound, False, variant, symbol, row, document,
-        rated.origin if rated is not None else "",
+        item.device.name, item.check.quantity, item.check.unit, way * now, way * at_worst, _times(rating, way),
+        _times(limit, way), ratio, mode, worst.corner, worst.proof, worst.bound, False, variant, symbol, row, document,
+        rated.origin if rated is not None else "", item.pin, way,
     )  # fmt: skip
 
 
-def findings_of(stress: Stress, device: Device) -> Iterable[Finding]:
-    """``stress/…``: an error above the rating, a warning above the policy's share of it."""
+def _times(number: float | None, way: float) -> float | None:
+    return None if number is None else way * number
+
+
+def beyond(stress: Stress) -> Level | None:
+    """``error`` above the rating, ``warning`` above the policy's limit, None within; exactly at either is within."""
     if stress.rating is None or stress.limit is None:
+        return None
+    worst, rating, limit = (stress.direction * x for x in (stress.worst, stress.rating, stress.limit))
+    polarity = stress.quantity == "reverse-polarity"
+    if worst > rating + (_REVERSE if polarity else _EXACT * abs(rating) + _FLOOR):
+        return "error"
+    if worst > limit + _EXACT * abs(limit) + _FLOOR and not polarity:
+        return "warning"
+    return None
+
+
+def findings_of(stress: Stress, device: Device, units: Mapping[str, str]) -> Iterable[Finding]:
+    """``stress/…``: an error above the rating, a warning above the policy's share of it; ``units`` of corner keys."""
+    level = beyond(stress)
+    if level is None or stress.rating is None or stress.limit is None:
         return
-    slack = _REVERSE if stress.quantity == "reverse-polarity" else _EXACT * abs(stress.rating)
-    if stress.worst > stress.rating + slack:
-        level, bound, whose = "error", stress.rating, "its rating"
-    elif stress.worst > stress.limit + _EXACT * abs(stress.limit) and stress.quantity != "reverse-polarity":
-        level, bound, whose = "warning", stress.limit, f"the policy's limit ({stress.row or 'no row'})"
-    else:
-        return
-    said = engineering(stress.worst, stress.unit)
-    allowed = engineering(bound, stress.unit)
-    where = corner_text(stress)
-    yield Finding(
-        f"stress/{stress.quantity}",
-        "error" if level == "error" else "warning",
-        f"{device.name}: {stress.quantity.replace('-', ' ')} of {said} exceeds {whose} of {allowed}{where}: "
+    bound = stress.rating if level == "error" else stress.limit
+    whose = "its rating" if level == "error" else f"the policy's limit ({stress.row or 'no row'})"
+    said = engineering(stress.worst, stress.unit, 4)
+    where = corner_text(stress.corner, units)
+    at = (f" at {where}" if where else "") + (f" with {stress.variant}" if stress.variant else "")
+    what = stress.quantity.replace("-", " ") + (f" of {stress.pin}" if stress.pin else "")
+    yield made(
+        f"stress/{stress.quantity}", level, device, stress.mode,
+        f"{what} reaches {said}{at}, beyond {whose} of {engineering(bound, stress.unit, 4)}: "
         f"{_MENDS.get(stress.quantity, 'choose a part with a higher rating or lower the stress')}",
-        quantity=stress.quantity,
-        value=stress.worst,
-        limit=stress.limit,
-        rating=stress.rating,
-        unit=stress.unit,
-        mode=stress.mode,
-        corner=stress.corner,
-        ratio=stress.ratio,
-        variant=stress.variant,
-        **about(device),  # type: ignore[arg-type]  # the mapping's keys are the field names
-    )
+        stress.corner, pin=stress.pin, quantity=stress.quantity, value=stress.worst, limit=stress.limit,
+        rating=stress.rating, unit=stress.unit, ratio=stress.ratio, variant=stress.variant,
+    )  # fmt: skip
 
 
-def corner_text(stress: Stress) -> str:
-    """`` at PS1 = 13.2, R1 = 95`` for a sentence, with the variant."""
-    parts = [f"{key} = {v:.5g}" for key, v in list(stress.corner.items())[:4]]
-    if len(stress.corner) > 4:
-        parts.append("...")
-    where = f" at {', '.join(parts)}" if parts else ""
-    return where + (f" with {stress.variant}" if stress.variant else "")
+def corner_text(corner: Mapping[str, float], units: Mapping[str, str], most: int = 4) -> str:
+    """``PS1 = 13.2 V, R1 = 95 ohm`` for a sentence; ``units`` of the corner's keys."""
+    parts = [
+        f"{key} = {engineering(v, units[key], 4) if key in units else f'{v:.4g}'}"
+        for key, v in list(corner.items())[:most]
+    ]
+    return ", ".join(parts) + (", ..." if len(corner) > most else "")
 
 
 _MENDS = {

@@ -24,7 +24,10 @@ def add(commands: Any) -> None:
     add_fail_on(command)
     command.add_argument("--nominal", action="store_true", help="nominal values only: no ranges, no tolerances")
     command.add_argument(
-        "--policy", default="none", metavar="NAME|FILE", help="share of each rating that may be used (none, cautious, ...)"
+        "--policy",
+        default="none",
+        metavar="NAME|FILE",
+        help="share of each rating that may be used (none, cautious, ...)",
     )
     command.add_argument("--require-complete", action="store_true", help="fail when something could not be audited")
     command.set_defaults(run=run)

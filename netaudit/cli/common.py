@@ -14,11 +14,20 @@ from netaudit.report.style import Style
 
 
 def add_files(command: argparse.ArgumentParser) -> None:
-    command.add_argument("files", nargs="+", metavar="NETLIST", help="netlist file; several are done one after the other")
-    command.add_argument("--root", metavar="FOLDER", help="project root: nothing outside it is read")
-    command.add_argument("--format", choices=("text", "json"), default="text", help="text for people, JSON for programs")
     command.add_argument(
-        "--set", action="append", default=[], metavar="R1=1k", dest="changes", help="change a value or state in every mode"
+        "files", nargs="+", metavar="NETLIST", help="netlist file; several are done one after the other"
+    )
+    command.add_argument("--root", metavar="FOLDER", help="project root: nothing outside it is read")
+    command.add_argument(
+        "--format", choices=("text", "json"), default="text", help="text for people, JSON for programs"
+    )
+    command.add_argument(
+        "--set",
+        action="append",
+        default=[],
+        metavar="R1=1k",
+        dest="changes",
+        help="change a value or state in every mode",
     )
 
 
@@ -70,5 +79,7 @@ def each(
         from netaudit.report.json_text import dumps
 
         single = len(options.files) == 1
-        sys.stdout.write(dumps(records[0] if single else {"schema": f"netaudit/{kind}-set/1", "boards": records}) + "\n")
+        sys.stdout.write(
+            dumps(records[0] if single else {"schema": f"netaudit/{kind}-set/1", "boards": records}) + "\n"
+        )
     return status

@@ -54,6 +54,7 @@ def finding_record(f: Finding) -> dict[str, Any]:
 def stress_record(s: Stress) -> dict[str, Any]:
     return {
         "device": s.device,
+        "pin": s.pin,
         "quantity": s.quantity,
         "unit": s.unit,
         "nominal": s.nominal,
@@ -108,6 +109,7 @@ def audit_record(audit: Audit, failed: bool, version: str) -> dict[str, Any]:
             for r in audit.results
         ],
         "generic": list(audit.generic),
+        "without_policy_row": list(audit.without_row),
         "files": dict(audit.board.files),
         "cautions": list(CAUTIONS),
     }

@@ -33,7 +33,9 @@ def kind_page(name: str) -> str | None:
     if kind.keys:
         lines += ["", "keys"] + [f"  {_key(key, spec)}" for key, spec in kind.keys.items()]
     if kind.ratings:
-        lines += ["", "ratings"] + [f"  {s:<10} {RATINGS[s].unit:<5} {RATINGS[s].text}" for s in kind.ratings if s in RATINGS]
+        lines += ["", "ratings"] + [
+            f"  {s:<10} {RATINGS[s].unit:<5} {RATINGS[s].text}" for s in kind.ratings if s in RATINGS
+        ]
     return "\n".join(lines) + "\n"
 
 
