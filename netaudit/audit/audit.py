@@ -48,7 +48,8 @@ class ModeAudit:
 def audit(board: Board, policy: str | Policy = "none", nominal: bool = False, modes: Sequence[str] = ()) -> Audit:
     """The audit of a board.
 
-    ``policy`` by name, file or as loaded; ``nominal`` looks at nominal values only; ``modes``: only these.  Raises InputError for a policy that cannot be read.
+    ``policy`` by name, file or as loaded; ``nominal`` looks at nominal values only; ``modes``: only these.
+    Raises InputError for a policy that cannot be read.
     """
     loaded = load_policy(policy) if isinstance(policy, str) else policy
     chosen = tuple(c for c in board.circuits if not modes or c.mode in modes)

@@ -128,8 +128,9 @@ def _amplifier(board: Solved, device: Device, question: str) -> Array:
     low, high = view.v("V-"), view.v("V+")
     span = np.maximum(high - low, 1e-12)
     if question == "swing":
-        room = np.maximum(span - view.value("swing") if "swing" in device.values else span, 1e-12)
-        share = np.maximum(view.v("OUT") - low, high - view.v("OUT")) / room - REACHED
+        # what the output would be without its ends: beyond them the loop is open
+        ideal, swing = view.inner("x"), view.value("swing")
+        share = np.maximum(ideal - (high - swing), low + swing - ideal) / span - 1e-6
     elif question == "limit":
         share = np.abs(view.i("OUT")) / view.value("limit") - REACHED
     else:
@@ -151,7 +152,8 @@ def relay_tasks(device: Device, circuit: Circuit, known: Context) -> Iterator[Ta
     """The coil's voltage against the given state of the contact."""
     energised = known.coils.get(device.name, 0.0)
     on = device.words.get("state") == "on"
-    limit = max(_HOLDS * energised, _COIL) if on else max(_RELEASES * energised, _COIL)
+    share = _HOLDS if on else _RELEASES
+    limit = device.nominal("V_on" if on else "V_off", max(share * energised, _COIL))
     s = -1.0 if on else 1.0
     yield Task(lambda b: s * (_coil(b, device) - limit), lambda e, n: _misfit(e, device, circuit, on, limit))
 

@@ -6,7 +6,7 @@ from collections.abc import Iterable, Iterator
 
 import numpy as np
 
-from netaudit.audit.context import CONDUCTS, POWERED, Context, knee
+from netaudit.audit.context import CONDUCTS, POWERED, REACHED, Context, knee
 from netaudit.audit.tasks import Task, made
 from netaudit.audit.worst import Extreme
 from netaudit.circuit.circuit import Circuit
@@ -52,12 +52,33 @@ def _starved(
 
 
 def regulator_tasks(device: Device, circuit: Circuit) -> Iterator[Task]:
-    """The headroom of a regulator (V_drop) or the least input of a converter (V_I_min)."""
+    """The current limit, and the headroom of a regulator (V_drop) or the least input of a converter (V_I_min)."""
     if device.words.get("state") == "off":
         return
+    if "limit" in device.values:
+        yield Task(lambda b: _share(b, device) - REACHED, lambda e, n: _limiting(e, device, circuit))
     symbol = "V_drop" if device.kind == "regulator" else "V_I_min"
     if symbol in device.values:
         yield Task(lambda b: _lacking(b, device), lambda e, n: _drop_out(e, n, device, circuit))
+
+
+def _share(board: Solved, device: Device) -> Array:
+    """Output current over its limit."""
+    view = board.view(device.name)
+    return np.asarray(-view.i("OUT") / view.value("limit"))
+
+
+def _limiting(extreme: Extreme, device: Device, circuit: Circuit) -> Iterable[Finding]:
+    if extreme.value < 0:
+        return
+    view = extreme.board.view(device.name)
+    volts, limit = float(view.v("OUT") - view.v("GND")), float(view.value("limit"))
+    yield made(
+        "point/supply-limiting", "error", device, circuit.mode,
+        f"it is in its current limit of {engineering(limit, 'A')} and its output falls to {engineering(volts, 'V')}: "
+        "lower the load or choose a stronger one",
+        extreme.corner, net=device.pins["OUT"], quantity="current", value=limit, limit=limit, unit="A",
+    )  # fmt: skip
 
 
 def _input(board: Solved, device: Device) -> Array:
