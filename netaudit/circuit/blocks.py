@@ -110,7 +110,9 @@ class Opener:
                 near = closest(pin, list(pins))
                 hint = f"did you mean {near}? " if near else ""
                 raise InputError(
-                    f"{name}: a {statement.kind.text} has no pin {pin}", place=item.pin.place, mend=f"{hint}it has {listed}"
+                    f"{name}: a {statement.kind.text} has no pin {pin}",
+                    place=item.pin.place,
+                    mend=f"{hint}it has {listed}",
                 )
         lacking = [pin for pin in pins if pin not in given]
         if lacking:

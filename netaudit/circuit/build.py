@@ -111,7 +111,9 @@ class Builder:
                 raise InputError(f"{raw.name}: a tolerance without a value", place=spec.tolerance.place)
             if kind.value.required and not state and "value" not in values:
                 raise InputError(
-                    f"{raw.name}: a {kind.name} needs its value", place=raw.place, mend=f"in {' or '.join(kind.value.units)}"
+                    f"{raw.name}: a {kind.name} needs its value",
+                    place=raw.place,
+                    mend=f"in {' or '.join(kind.value.units)}",
                 )
             return
         coded = bool(_CODED & set(kind.value.units))
@@ -119,9 +121,7 @@ class Builder:
         _physical(raw.name, "its value", quantity, kind.value, written.place)
         values["value"] = quantity
 
-    def _key(
-        self, raw: RawDevice, key: str, word: Word, values: dict[str, Quantity], words: dict[str, str]
-    ) -> None:
+    def _key(self, raw: RawDevice, key: str, word: Word, values: dict[str, Quantity], words: dict[str, str]) -> None:
         spec = raw.kind.keys[key]
         if word.text in spec.words or not spec.unit:
             if spec.words and word.text not in spec.words:
@@ -184,5 +184,10 @@ def covered(device: Device, reason: str, draws: Mapping[tuple[str, str], Quantit
     values = {**device.values, **{f"{a}:{b}": q for (a, b), q in draws.items()}}
     kind = "unmodelled" if device.missing or device.kind == "unmodelled" else device.kind
     return replace(
-        device, kind=kind, values=values, draws=tuple((a, b, q) for (a, b), q in draws.items()), covered=reason, missing=""
+        device,
+        kind=kind,
+        values=values,
+        draws=tuple((a, b, q) for (a, b), q in draws.items()),
+        covered=reason,
+        missing="",
     )

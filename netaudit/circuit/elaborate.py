@@ -29,7 +29,6 @@ from netaudit.syntax.statements import (
     OmitStatement,
     PartsStatement,
     PlaceStatement,
-    SameHeatStatement,
     SetStatement,
     TitleStatement,
     Word,
@@ -66,9 +65,7 @@ class Elaboration:
         self.cautions += table.overridden
         self.table = table
         self.builder = Builder(table, netlist.root)
-        self.grounds = tuple(
-            dict.fromkeys(s.net.text for s in netlist.statements if isinstance(s, GroundStatement))
-        )
+        self.grounds = tuple(dict.fromkeys(s.net.text for s in netlist.statements if isinstance(s, GroundStatement)))
         self.blocks = self._blocks()
         self.opened = Opener(self.blocks, frozenset(self.grounds)).open(netlist.statements)
         self.raws: dict[str, RawDevice] = {}
@@ -127,8 +124,6 @@ class Elaboration:
             nets.update(dict.fromkeys(net for net in raw.pins.values() if net is not None))
         return tuple(nets)
 
-    # --- targets -----------------------------------------------------------------------------------------------------
-
     def _known(self, word: Word, prefix: str = "") -> str:
         """The full designator a word names; InputError with the closest one when there is none."""
         name = f"{prefix}{word.text}"
@@ -150,8 +145,6 @@ class Elaboration:
         if pin not in pins:
             raise InputError(f"{device} has no pin {pin}", place=place, mend=f"it has {' '.join(pins)}")
         return pin
-
-    # --- statements that speak of devices ------------------------------------------------------------------------------
 
     def _covers(self) -> dict[str, tuple[str, dict[tuple[str, str], Quantity]]]:
         found: dict[str, tuple[str, dict[tuple[str, str], Quantity]]] = {}
@@ -189,8 +182,6 @@ class Elaboration:
             paths.append(HeatPath(names, r, s.place))
         return tuple(paths)
 
-    # --- modes ---------------------------------------------------------------------------------------------------------
-
     def _modes(self) -> list[_Mode]:
         modes: dict[str, _Mode] = {}
         if not self.netlist.only_modes:
@@ -226,8 +217,6 @@ class Elaboration:
         kept = (AmbientStatement, SetStatement, OmitStatement, PlaceStatement)
         self._applied([s for s in self.netlist.statements if isinstance(s, kept)], state)
         return state
-
-    # --- the board -----------------------------------------------------------------------------------------------------
 
     def board(self) -> Board:
         top = self._top()

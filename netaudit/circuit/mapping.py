@@ -21,7 +21,17 @@ from netaudit.parts.tables import PartTable
 from netaudit.syntax.export import Export, Instance
 from netaudit.syntax.statements import Word
 
-PART_NAMES = ("part number", "partnumber", "part_number", "mpn", "manufacturer part number", "part", "device", "name", "comment")
+PART_NAMES = (
+    "part number",
+    "partnumber",
+    "part_number",
+    "mpn",
+    "manufacturer part number",
+    "part",
+    "device",
+    "name",
+    "comment",
+)
 VALUE_NAMES = ("value", "val", "comment")
 TOLERANCE_NAMES = ("tolerance", "tol")
 #: rating symbols by the property names that are read as them
@@ -92,9 +102,7 @@ def gathered(instances: Sequence[Instance]) -> list[Instance]:
         else:
             stated = {p.name.casefold() for p in known.properties}
             more = tuple(p for p in instance.properties if p.name.casefold() not in stated)
-            order[name] = replace(
-                known, pins={**instance.pins, **known.pins}, properties=(*known.properties, *more)
-            )
+            order[name] = replace(known, pins={**instance.pins, **known.pins}, properties=(*known.properties, *more))
     return list(order.values())
 
 

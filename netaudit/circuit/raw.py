@@ -43,7 +43,7 @@ def sort_items(name: str, kind: Kind, items: Items) -> Spec:
             raise InputError(
                 f"{name}: a second {_said(field_name)}, {word.text!r}", place=word.place, mend="keep one of them"
             )
-        spec = replace(spec, **{field_name: word})
+        spec = replace(spec, **{field_name: word})  # type: ignore[arg-type]  # the name is one of the four words
     if spec.span is not None and spec.tolerance is not None:
         raise InputError(
             f"{name}: a range and a tolerance on one value", place=spec.tolerance.place, mend="keep one of them"
@@ -77,7 +77,9 @@ def _unknown_word(name: str, kind: Kind, word: Word) -> InputError:
         mend = f"a {kind.name} can be {' or '.join(kind.states)}"
     else:
         mend = "a value needs digits, a key is written key=value, a pin PIN:NET"
-    return InputError(f"{name}: {word.text!r} is neither a value nor a state of a {kind.name}", place=word.place, mend=mend)
+    return InputError(
+        f"{name}: {word.text!r} is neither a value nor a state of a {kind.name}", place=word.place, mend=mend
+    )
 
 
 def changed(old: Spec, new: Spec) -> Spec:

@@ -16,8 +16,7 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from netaudit.devices.base import Array, Assembly, Check, Device, Kind, Value, Values, View, conductance, two_pin
-from netaudit.devices.base import Key as K
+from netaudit.devices.base import Array, Assembly, Check, Device, Key, Kind, Value, Values, View, conductance, two_pin
 from netaudit.devices.common import POWER_RATINGS, junction_temperature, power
 from netaudit.devices.families import EXPONENTIAL
 from netaudit.devices.junction import LEAK, log_saturation, thermal_voltage
@@ -151,17 +150,17 @@ def weak_drive(view: View, device: Device, sign: float) -> Array:
     return np.where(switched, i_c / np.maximum(i_b, 1e-15) / (0.5 * least) - 1.0, -1.0)
 
 
-def _keys() -> Iterator[tuple[str, K]]:
+def _keys() -> Iterator[tuple[str, Key]]:
     for name, unit in (("I_S", "A"), ("beta_F", "1"), ("beta_R", "1"), ("n", "1"), ("E_g", "eV")):
-        yield name, K(unit, positive=True)
-    yield "h_FE", K("1", at="A")
-    yield "V_BE", K("V", at="A")
-    yield "V_CE_sat", K("V", at="A")
-    yield "T_0", K("degC")
-    yield "V_F", K("V")
+        yield name, Key(unit, positive=True)
+    yield "h_FE", Key("1", at="A")
+    yield "V_BE", Key("V", at="A")
+    yield "V_CE_sat", Key("V", at="A")
+    yield "T_0", Key("degC")
+    yield "V_F", Key("V")
     for name in ("R_B", "R_C", "R_E"):
-        yield name, K("ohm", least=0.0)
-    yield "material", K()
+        yield name, Key("ohm", least=0.0)
+    yield "material", Key()
 
 
 KEYS = dict(_keys())

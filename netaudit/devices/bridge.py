@@ -16,12 +16,12 @@ _PAIRS = (("AC1", "+"), ("AC2", "+"), ("-", "AC1"), ("-", "AC2"))
 
 def _forward(view: View) -> Array:
     """The largest of the four diodes' currents."""
-    return np.max(np.stack([view.branch(k)[1] for k in range(4)]), axis=0)
+    return np.asarray(np.max(np.stack([view.branch(k)[1] for k in range(4)]), axis=0))
 
 
 def _reverse(view: View) -> Array:
     """The largest of the four diodes' reverse voltages."""
-    return np.max(np.stack([view.v(q) - view.v(p) for p, q in _PAIRS]), axis=0)
+    return np.asarray(np.max(np.stack([view.v(q) - view.v(p) for p, q in _PAIRS]), axis=0))
 
 
 @dataclass(frozen=True)

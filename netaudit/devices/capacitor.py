@@ -24,9 +24,7 @@ class Capacitor(Kind):
 
     def checks(self, device: Device) -> tuple[Check, ...]:
         if "+" not in device.pins:
-            return (
-                Check("voltage", "V", ("V_R",), lambda view: view.v("1") - view.v("2"), both=True, required=True),
-            )
+            return (Check("voltage", "V", ("V_R",), lambda view: view.v("1") - view.v("2"), both=True, required=True),)
         return (
             Check("voltage", "V", ("V_R",), lambda view: view.v("+") - view.v("-"), required=True),
             Check("reverse-polarity", "V", ("V_rev",), lambda view: view.v("-") - view.v("+")),

@@ -59,6 +59,4 @@ class Diode(Kind):
         return view.i("A")
 
 
-KIND = Diode(
-    "diode", (("A", "K"),), keys={**JUNCTION_KEYS}, ratings=("I_F", "V_R", "V_RRM", *POWER_RATINGS)
-)
+KIND = Diode("diode", (("A", "K"),), keys={**JUNCTION_KEYS}, ratings=("I_F", "V_R", "V_RRM", *POWER_RATINGS))

@@ -107,7 +107,9 @@ class FieldEffect(Kind):
         s = self.sign
         return (
             Check("drain-current", "A", ("I_D",), lambda v: s * v.i("D"), both=True, required=True),
-            Check("drain-source-voltage", "V", ("V_DS",), lambda v: s * (v.v("D") - v.v("S")), both=True, required=True),
+            Check(
+                "drain-source-voltage", "V", ("V_DS",), lambda v: s * (v.v("D") - v.v("S")), both=True, required=True
+            ),
             Check("gate-source-voltage", "V", ("V_GS",), lambda v: s * (v.v("G") - v.v("S")), both=True, required=True),
             power(required=True),
             junction_temperature(),

@@ -10,6 +10,7 @@ from __future__ import annotations
 
 import math
 from dataclasses import replace
+from itertools import pairwise
 
 import numpy as np
 
@@ -29,7 +30,7 @@ KELVIN = 273.15
 
 def thermal_voltage(temperature: Value) -> Value:
     """V_T = k T / q in volts, temperature in degC."""
-    return BOLTZMANN * (np.asarray(temperature) + KELVIN) / CHARGE
+    return np.asarray(BOLTZMANN * (np.asarray(temperature) + KELVIN) / CHARGE, dtype=float)
 
 
 def log_saturation(values: Values, n: Value) -> Value:
@@ -96,8 +97,8 @@ def with_junction(device: Device, default: str = "") -> Device:
         values["I_S"] = exact(source.I_S, "A")
         values.setdefault("n", exact(source.n, "1"))
         values.setdefault("R_S", exact(source.R_S, "ohm"))
-    for name, unit, least in (("I_S", "A", 0.0), ("n", "1", 0.0)):
-        if name in values and values[name].low <= least:
+    for name in ("I_S", "n"):
+        if name in values and values[name].low <= 0.0:
             raise InputError(f"{device.name}: {name} must be above zero", place=device.place)
     values.setdefault("n", exact(1.0, "1"))
     values.setdefault("R_S", exact(0.0, "ohm"))
@@ -139,9 +140,7 @@ def with_breakdown(device: Device) -> Device:
         i_zk = values["I_ZK"].nominal if "I_ZK" in values else _rated(device, "I_ZK")
         r_zk = values["r_ZK"].nominal
         if not 0 < i_zk < i_z or r_zk <= r_z:
-            raise InputError(
-                f"{device.name}: r_ZK must be above r_Z, at an I_ZK below I_Z", place=device.place
-            )
+            raise InputError(f"{device.name}: r_ZK must be above r_Z, at an I_ZK below I_Z", place=device.place)
         knee = min((r_zk - r_z) / (1 / i_zk - 1 / i_z), i_z * r_z)
         r = r_z - knee / i_z
     values["V_knee"], values["R_breakdown"] = exact(knee, "V"), exact(r, "ohm")
@@ -160,7 +159,7 @@ def curve_of(device: Device) -> Table:
     points = tuple(sorted(device.points))
     if len(points) < 2:
         raise InputError(f"{device.name}: a curve needs two points at least", place=device.place)
-    for (v0, i0), (v1, i1) in zip(points, points[1:], strict=False):
+    for (v0, i0), (v1, i1) in pairwise(points):
         if v0 == v1:
             raise InputError(
                 f"{device.name}: two currents, {i0:g} A and {i1:g} A, at one voltage {v0:g} V", place=device.place

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from netaudit.devices.diode import JUNCTION_KEYS, Diode
 from netaudit.devices.common import POWER_RATINGS
+from netaudit.devices.diode import JUNCTION_KEYS, Diode
 
 KIND = Diode("led", (("A", "K"),), keys={**JUNCTION_KEYS}, ratings=("I_F", "V_R", "V_RRM", *POWER_RATINGS))

@@ -9,11 +9,23 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from netaudit.devices.base import Array, Assembly, Check, Device, Growth, Key, Kind, Values, ValueSpec, View, conductance
+from netaudit.devices.base import (
+    Array,
+    Assembly,
+    Check,
+    Device,
+    Growth,
+    Key,
+    Kind,
+    Values,
+    ValueSpec,
+    View,
+    conductance,
+    two_pin,
+)
 from netaudit.devices.common import power
 from netaudit.devices.families import RAMP
 from netaudit.devices.power import FADING_POWER
-from netaudit.devices.base import two_pin
 from netaudit.failure import InputError
 from netaudit.quantities.quantity import exact
 

@@ -11,7 +11,7 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from netaudit.devices.base import Array, Assembly, Check, Device, Key, Kind, Values, View, conductance
+from netaudit.devices.base import Array, Assembly, Check, Device, Key, Kind, Value, Values, View, conductance
 from netaudit.devices.common import POWER_RATINGS, junction_temperature, power
 from netaudit.devices.diode import JUNCTION_KEYS
 from netaudit.devices.families import EXPONENTIAL
@@ -41,7 +41,7 @@ class Optocoupler(Kind):
             R=values["R_S"],
         )
         conductance(a, p, q, LEAK)
-        law = {"log_I": _LOG_I, "V": vt, "R": 0.0}
+        law: dict[str, Value] = {"log_I": _LOG_I, "V": vt, "R": 0.0}
         a.branch(EXPONENTIAL, [(c, 1.0), (b, 1 / _BETA), (e, -1 - 1 / _BETA)], [(b, 1.0), (e, -1.0)], **law)
         a.branch(EXPONENTIAL, [(e, 1.0), (b, 1.0), (c, -2.0)], [(b, 1.0), (c, -1.0)], **law)
         conductance(a, b, e, LEAK)

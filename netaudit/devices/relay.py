@@ -10,7 +10,19 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from netaudit.devices.base import Array, Assembly, Check, Device, Growth, Key, Kind, Values, View, conductance, resistance
+from netaudit.devices.base import (
+    Array,
+    Assembly,
+    Check,
+    Device,
+    Growth,
+    Key,
+    Kind,
+    Values,
+    View,
+    conductance,
+    resistance,
+)
 from netaudit.devices.common import POSITIVE_OHM
 
 _THRESHOLD = 1.0

@@ -31,7 +31,8 @@ def at_temperature(values: Values, name: str = "value") -> Value:
     if not (values.has("alpha") or values.has("alpha_2")):
         return r
     rise = np.asarray(values.temperature) - np.asarray(values["T_0"])
-    return r * (1.0 + np.asarray(values.get("alpha", 0.0)) * rise + np.asarray(values.get("alpha_2", 0.0)) * rise**2)
+    first, second = np.asarray(values.get("alpha", 0.0)), np.asarray(values.get("alpha_2", 0.0))
+    return np.asarray(r * (1.0 + first * rise + second * rise**2), dtype=float)
 
 
 def stamp_resistance(a: Assembly, p: int, q: int, r: Value, low: bool, name: str = "i") -> None:

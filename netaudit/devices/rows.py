@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import numpy as np
 
-from netaudit.devices.base import Assembly, Terms, Value, two_pin, conductance
+from netaudit.devices.base import Assembly, Terms, Value, conductance, two_pin
 from netaudit.devices.families import EXPONENTIAL, RAMP
 from netaudit.devices.junction import BOLTZMANN, CHARGE, KELVIN, LEAK
 

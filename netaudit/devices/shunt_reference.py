@@ -10,11 +10,10 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from netaudit.devices.base import Array, Assembly, Check, Device, Key, Kind, Values, View
+from netaudit.devices.base import Array, Assembly, Check, Device, Key, Kind, Values, View, conductance
 from netaudit.devices.common import POWER_RATINGS, junction_temperature, power
 from netaudit.devices.families import RAMP
 from netaudit.devices.junction import LEAK
-from netaudit.devices.base import conductance
 from netaudit.quantities.quantity import exact
 
 #: voltage that the cathode keeps when fully on, as a share of V_ref (common practice for parts of 1.2 V to 2.5 V)

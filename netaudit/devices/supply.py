@@ -11,7 +11,7 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from netaudit.devices.base import Array, Assembly, Check, Device, Growth, Key, Kind, Values, ValueSpec, View
+from netaudit.devices.base import Array, Assembly, Check, Device, Growth, Key, Kind, Value, Values, ValueSpec, View
 from netaudit.devices.families import RAMP
 from netaudit.quantities.quantity import exact
 
@@ -45,7 +45,7 @@ class Supply(Kind):
         if values.has("limit"):
             limit = np.asarray(values["limit"])
             rho = max(abs(device.nominal("value")), 1.0) / device.nominal("limit")
-            sense = [(p, -s), (q, s), (j, s * rho - s * r)]
+            sense: list[tuple[int, Value]] = [(p, -s), (q, s), (j, s * rho - s * r)]
             a.branch(RAMP, [(j, -1.0)], sense, offset=rho * limit - s * v0)
 
     def conducts(self, device: Device) -> tuple[tuple[str, ...], ...]:

@@ -10,8 +10,11 @@ from __future__ import annotations
 from dataclasses import dataclass, field
 
 import numpy as np
+from numpy.typing import NDArray
 
 from netaudit.devices.families import Array, Family, Parameters, Shape, widen
+
+Index = NDArray[np.intp]
 
 
 @dataclass(frozen=True)
@@ -35,7 +38,7 @@ class Table(Family):
             return "increasing"
         return "nondecreasing" if (np.diff(self._y) >= 0).all() and self._d[0] >= 0 and self._d[-1] >= 0 else "other"
 
-    def _pieces(self, u: Array) -> tuple[Array, Array, Array, Array, Array]:
+    def _pieces(self, u: Array) -> tuple[Index, Array, Array, Array, Array]:
         """For each u: piece number, width, and the cubic's coefficients (c1, c2, c3) about the piece's left point."""
         k = np.clip(np.searchsorted(self._x, u, side="right") - 1, 0, len(self._x) - 2)
         h = self._x[k + 1] - self._x[k]
@@ -129,7 +132,7 @@ def _levels(values: Array, pick: np.ufunc) -> list[Array]:
     return out
 
 
-def _range(levels: list[Array], first: Array, last: Array, pick: np.ufunc) -> Array:
+def _range(levels: list[Array], first: Index, last: Index, pick: np.ufunc) -> Array:
     """pick over values[first .. last], both included, for arrays of ends."""
     span = last - first + 1
     level = np.floor(np.log2(np.maximum(span, 1))).astype(int)

@@ -87,7 +87,9 @@ def _one(curve: Curve, meter: Meter, temperature: float) -> Fit:
         return Fit(False, temperature=t, points=_single(points), left_out=left_out)
     fit = _forward(v[forward], i[forward], meter, t)
     if fit is None or not _close(fit, v[forward], i[forward]):
-        return Fit(False, temperature=t, points=_single(points), left_out=left_out, worst=fit.worst if fit else math.nan)
+        return Fit(
+            False, temperature=t, points=_single(points), left_out=left_out, worst=fit.worst if fit else math.nan
+        )
     leakage, breakdown = _reverse(v, i, fit)
     return Fit(
         True, fit.I_S, fit.n, fit.R_S, t, fit.errors, leakage, breakdown, None, None, fit.worst, fit.worst_at,
@@ -114,14 +116,20 @@ def _usable(v: Array, i: Array, meter: Meter) -> tuple[Array, Array, tuple[str, 
         largest = float(np.max(np.abs(i)))
         near = np.abs(i) > largest * (1 - 2e-3)
         # a plateau: three points or more at one current while the voltage goes on
-        flat = near.sum() >= 3 and np.ptp(v[near]) > 0.02 and np.ptp(v[near]) > 20 * np.ptp(np.abs(i[near])) / largest * 0.026
+        flat = (
+            near.sum() >= 3
+            and np.ptp(v[near]) > 0.02
+            and np.ptp(v[near]) > 20 * np.ptp(np.abs(i[near])) / largest * 0.026
+        )
         top = largest if flat else None
     if top is None:
         return v, i, ()
     at_limit = np.abs(i) >= top * (1 - 2e-3)
     if not at_limit.any():
         return v, i, ()
-    said = f"{int(at_limit.sum())} points at the current limit of {top:.4g} A (from {float(v[at_limit].min()):.4g} V on)"
+    said = (
+        f"{int(at_limit.sum())} points at the current limit of {top:.4g} A (from {float(v[at_limit].min()):.4g} V on)"
+    )
     return v[~at_limit], i[~at_limit], (said,)
 
 
@@ -164,7 +172,11 @@ def _forward(v: Array, i: Array, meter: Meter, t: float) -> Fit | None:
     sigma = np.sqrt(np.diag(covariance) * scale)
     worst = int(np.argmax(np.abs(v - model)))
     i_s = float(np.exp(theta[1]))
-    errors = {"n": float(sigma[0] / vt), "I_S": float(sigma[1] * i_s), "R_S": float(sigma[2]) if len(free) == 3 else 0.0}
+    errors = {
+        "n": float(sigma[0] / vt),
+        "I_S": float(sigma[1] * i_s),
+        "R_S": float(sigma[2]) if len(free) == 3 else 0.0,
+    }
     return Fit(
         True, i_s, float(theta[0] / vt), float(theta[2]), t, errors, worst=float(abs(v - model)[worst]),
         worst_at=(float(v[worst]), float(i[worst])),

@@ -9,6 +9,7 @@ from __future__ import annotations
 import math
 from collections.abc import Sequence
 from dataclasses import dataclass
+from itertools import pairwise
 
 import numpy as np
 
@@ -56,7 +57,7 @@ def _check(points: Sequence[tuple[float, float]], known: Material | None, place:
     for v, i in points:
         if v <= 0 or i <= 0:
             raise InputError(f"a forward point of {v:g} V and {i:g} A", place=place, mend="both must be positive")
-    for (v0, i0), (v1, i1) in zip(points, points[1:], strict=False):
+    for (v0, i0), (v1, i1) in pairwise(points):
         if i0 == i1:
             raise InputError(f"two forward points at {i0:g} A", place=place, mend="keep one")
         if v1 <= v0:

@@ -77,5 +77,5 @@ def zener_class(V_Z: float) -> tuple[float, float]:
     lowest near 7 V and grows to both sides."""
     table = ((2.4, 100.0), (3.3, 95.0), (4.3, 75.0), (5.1, 50.0), (5.6, 30.0), (6.2, 10.0), (7.5, 8.0), (9.1, 12.0),
              (12.0, 25.0), (18.0, 45.0), (27.0, 80.0), (39.0, 130.0), (75.0, 250.0))  # fmt: skip
-    r = table[-1][1] * V_Z / table[-1][0] if V_Z > table[-1][0] else next(r for v, r in table if V_Z <= v)
+    r = table[-1][1] * V_Z / table[-1][0] if table[-1][0] < V_Z else next(r for v, r in table if v >= V_Z)
     return 5e-3, r

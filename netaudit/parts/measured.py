@@ -72,7 +72,9 @@ def read_curves(data: bytes, file: str, layout: Layout | None = None) -> tuple[C
     curves = _curves(table, numbers, columns, layout)
     for curve in curves:
         if len(curve.v) < 2:
-            raise InputError(f"a curve of {len(curve.v)} point(s)", place=Place(file, lines[0].number), mend="two at least")
+            raise InputError(
+                f"a curve of {len(curve.v)} point(s)", place=Place(file, lines[0].number), mend="two at least"
+            )
     return curves
 
 
@@ -124,7 +126,9 @@ def _numbers(rows: Sequence[_Line], file: str) -> tuple[Array, list[int]]:
             if not cell:
                 continue
             if not _NUMBER.match(cell):
-                raise InputError(f"{cell[:40]!r} is not a number", place=Place(file, row.number), mend="one number a cell")
+                raise InputError(
+                    f"{cell[:40]!r} is not a number", place=Place(file, row.number), mend="one number a cell"
+                )
             table[k, c] = float(cell)
     return table, [r.number for r in rows]
 
@@ -196,7 +200,9 @@ def _temperature(cell: str) -> float | None:
     return float(match["t"].replace(",", ".")) if match else None
 
 
-def _curves(table: Array, numbers: Sequence[int], columns: Sequence[_Column | None], layout: Layout) -> tuple[Curve, ...]:
+def _curves(
+    table: Array, numbers: Sequence[int], columns: Sequence[_Column | None], layout: Layout
+) -> tuple[Curve, ...]:
     voltages = [k for k, c in enumerate(columns) if c is not None and c.role == "voltage"]
     supplies = [k for k, c in enumerate(columns) if c is not None and c.role == "supply"]
     currents = [k for k, c in enumerate(columns) if c is not None and c.role == "current"]

@@ -22,7 +22,6 @@ from netaudit.place import Place
 from netaudit.quantities.read import read_number
 
 
-
 @dataclass(frozen=True)
 class Row:
     """One row: ``factor`` of the rating, ``cap`` in degC, ``offset`` kelvin below the rating; ``document`` it is from."""
@@ -130,7 +129,9 @@ def _quality(level: int, environment: str) -> Policy:
     cell = _SIGNAL[level][_ENVIRONMENTS.index(environment)]
     name = f"quality-{level}-{environment}"
     if cell is None:
-        raise InputError(f"policy {name}: this quality level is not allowed there ({_QUALITY})", mend="choose level 1 or 2")
+        raise InputError(
+            f"policy {name}: this quality level is not allowed there ({_QUALITY})", mend="choose level 1 or 2"
+        )
     document = f"{_QUALITY}, level {level}, {environment}"
     rows: dict[tuple[str, str], Row] = {}
     for kind in ("diode", "led", "bridge"):
@@ -142,7 +143,9 @@ def _quality(level: int, environment: str) -> Policy:
 
 def policy_names() -> tuple[str, ...]:
     """The policies that ship."""
-    quality = (f"quality-{n}-{e}" for n, cells in _SIGNAL.items() for e, c in zip(_ENVIRONMENTS, cells, strict=True) if c)
+    quality = (
+        f"quality-{n}-{e}" for n, cells in _SIGNAL.items() for e, c in zip(_ENVIRONMENTS, cells, strict=True) if c
+    )
     return ("none", "cautious", "two-level-severe", "two-level-benign", *quality)
 
 
@@ -178,7 +181,9 @@ def _from_file(path: str) -> Policy:
         for symbol, entry in entries.items():
             place = Place(path, _line_of(text, symbol))
             if symbol not in RATINGS and symbol != "value":
-                raise InputError(f"policy: unknown rating {symbol}", place=place, mend="use a symbol of the part tables")
+                raise InputError(
+                    f"policy: unknown rating {symbol}", place=place, mend="use a symbol of the part tables"
+                )
             rows[(owner if isinstance(table, dict) and owner != "all" else "", symbol)] = _row(entry, path, place)
     return Policy(Path(path).stem, rows)
 
@@ -195,7 +200,7 @@ def _row(entry: Any, path: str, place: Place) -> Row:
         offset = re.fullmatch(r"\w+\s*-\s*(\S+)", text)
         if offset and not re.match(r"[\d.]", text):
             row = Row(row.factor, row.cap, read_number(offset[1], "K", place), path)
-        elif text.endswith("degC") or text.endswith("°C"):
+        elif text.endswith(("degC", "°C")):
             row = Row(row.factor, read_number(text, "degC", place), row.offset, path)
         else:
             factor = read_number(text, "1", place)

@@ -159,7 +159,9 @@ def make_part(name: str, row: Mapping[str, Any], place: Place) -> Part:
     points = tuple(_pair(text, "V", "A", place) for text in _listed(row.get("points", ())))
     error: float | None = None
     rough = ""
-    models = [m for m, given in (("forward", "forward" in row), ("points", bool(points)), ("I_S", "I_S" in row)) if given]
+    models = [
+        m for m, given in (("forward", "forward" in row), ("points", bool(points)), ("I_S", "I_S" in row)) if given
+    ]
     if len(models) > 1:
         raise InputError(f"part {name} has two models: {' and '.join(models)}", place=place, mend="keep one of them")
     known = material(words["material"], place) if "material" in words else None
@@ -230,7 +232,9 @@ def _spread(spread: Mapping[str, Any], parameters: dict[str, Quantity], place: P
     for key, value in spread.items():
         if key not in PARAMETERS:
             near = closest(key, list(PARAMETERS))
-            raise InputError(f"spread of an unknown value {key}", place=place, mend=f"did you mean {near}?" if near else "")
+            raise InputError(
+                f"spread of an unknown value {key}", place=place, mend=f"did you mean {near}?" if near else ""
+            )
         text = str(value)
         unit = PARAMETERS[key].unit
         nominal = parameters[key].nominal if key in parameters else 0.0

@@ -24,7 +24,7 @@ def write_quantity(q: Quantity) -> str:
     nominal = write_number(q.nominal, q.unit)
     if q.spread == "none":
         return nominal
-    span = {"percent": _percent, "absolute": _absolute}.get(q.spread, lambda q: None)(q)
+    span = _percent(q) if q.spread == "percent" else _absolute(q) if q.spread == "absolute" else None
     if span is None:
         span = f"{write_number(q.low, q.unit)}..{write_number(q.high, q.unit)}"
     return f"{nominal},{span}"

@@ -73,9 +73,7 @@ def _branch_names(system: System) -> list[tuple[str, int]]:
     return out
 
 
-def _combined(
-    solver: Solver, first: Settled, choices: Sequence[list[dict[tuple[str, int], float]]]
-) -> list[Settled]:
+def _combined(solver: Solver, first: Settled, choices: Sequence[list[dict[tuple[str, int], float]]]) -> list[Settled]:
     names = _branch_names(solver.system)
     found = [first]
     for picks in islice(product(*choices), _COMBINATIONS):

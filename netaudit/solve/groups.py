@@ -83,9 +83,7 @@ def _group(devices: list[Device]) -> Group:
 def alone(circuit: Circuit, group: Group) -> Circuit:
     """The circuit of one group with the stiff supplies that hold its rails."""
     held = rails(circuit)
-    supplies = [
-        d for d in circuit.devices if is_stiff(d) and not d.missing and set(d.pins.values()) <= held
-    ]
+    supplies = [d for d in circuit.devices if is_stiff(d) and not d.missing and set(d.pins.values()) <= held]
     devices = (*supplies, *group.devices)
     touched = {net for d in devices for net in d.pins.values()}
     nets = tuple(net for net in circuit.nets if net in touched)

@@ -1,4 +1,4 @@
-"""What stands behind Newton: a fixed tuple of remedies, each tried only when the one before failed, each with a name."""
+"""What stands behind Newton: a fixed tuple of remedies, each tried only when the one before failed."""
 
 from __future__ import annotations
 

@@ -53,7 +53,7 @@ class Dense:
 def _solve(jac: Array, right: Array) -> Array:
     """Batched solve; members with a singular matrix give nan instead of spoiling the batch."""
     try:
-        return np.linalg.solve(jac, right)
+        return np.asarray(np.linalg.solve(jac, right), dtype=float)
     except np.linalg.LinAlgError:
         if jac.ndim == 2:
             return np.full(right.shape, np.nan)

@@ -107,7 +107,7 @@ def _step(
     rho = seen_resistance(z, slope)
     new = num.branches.limit(u, proposal, current, rho)
     small = STEP_ABSOLUTE + STEP_RELATIVE * np.abs(u)
-    at_rest = (np.abs(change) <= small).all(axis=-1)
+    at_rest = np.asarray((np.abs(change) <= small).all(axis=-1))
     if effort.damping < 1.0:
         new = u + effort.damping * (new - u)
     return x, new, at_rest

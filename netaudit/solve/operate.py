@@ -6,9 +6,9 @@ import numpy as np
 
 from netaudit.circuit.circuit import Circuit
 from netaudit.solve.certificate import certify
+from netaudit.solve.further import further_points
 from netaudit.solve.point import ModeResult, Point, Uniqueness
 from netaudit.solve.runaway import follow
-from netaudit.solve.further import further_points
 from netaudit.solve.settle import Settled, Solver
 from netaudit.solve.solved import Solved
 from netaudit.solve.stability import Stability, stability
@@ -65,12 +65,16 @@ class Operation:
         return ModeResult(self.circuit, points, uniqueness, because, runaway=followed.runaway)
 
     def _point(self, settled: Settled, proven: bool) -> Point:
-        return make_point(settled.solved.pick(0), settled, self._stability(settled.solved, proven), self._gains(settled))
+        return make_point(
+            settled.solved.pick(0), settled, self._stability(settled.solved, proven), self._gains(settled)
+        )
 
     def _stability(self, board: Solved, proven: bool) -> Stability:
         """Passive circuits need no numbers; others a dense Jacobian, which very large ones do not get."""
         if proven:
-            return Stability(True, "all branches are strictly increasing and the rest is passive: it decays with any capacitances")
+            return Stability(
+                True, "all branches are strictly increasing and the rest is passive: it decays with any capacitances"
+            )
         if self.system.n > _LARGEST_DENSE:
             return Stability(None, "not decided: the circuit is too large for the test")
         slope = board.num.branches.value(board.u)[1]

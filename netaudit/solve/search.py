@@ -9,7 +9,7 @@ nothing; it is deterministic.
 from __future__ import annotations
 
 from collections.abc import Iterator
-from itertools import product
+from itertools import pairwise, product
 
 import numpy as np
 
@@ -50,7 +50,7 @@ def _turning(family: Table) -> list[float]:
     y = np.array([p[1] for p in family.points])
     signs = np.sign(np.diff(y))
     starts = [0, *(np.flatnonzero(signs[1:] * signs[:-1] < 0) + 1), len(x) - 1]
-    return [float(0.5 * (x[a] + x[b])) for a, b in zip(starts[:-1], starts[1:], strict=True)]
+    return [float(0.5 * (x[a] + x[b])) for a, b in pairwise(starts)]
 
 
 def _parameter(num: Numbers, k: int, name: str) -> Array:

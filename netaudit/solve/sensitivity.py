@@ -50,9 +50,7 @@ def variables(solver: Solver) -> tuple[Variable, ...]:
     return tuple(found)
 
 
-def assign(
-    spans: Sequence[Variable], values: Array, ambient: float
-) -> tuple[dict[tuple[str, str], Value], Value]:
+def assign(spans: Sequence[Variable], values: Array, ambient: float) -> tuple[dict[tuple[str, str], Value], Value]:
     """Overrides and ambient for rows of values (members, variables); ambient stays where no variable is the ambient."""
     overrides: dict[tuple[str, str], Value] = {}
     air: Value = ambient
@@ -98,7 +96,7 @@ def steps(spans: Sequence[Variable], values: Array) -> Array:
     low = np.array([v.quantity.low for v in spans])
     high = np.array([v.quantity.high for v in spans])
     size = SHARE * (high - low)
-    return np.where(values + size > high, -size, size)
+    return np.asarray(np.where(values + size > high, -size, size), dtype=float)
 
 
 def _with_heat(solver: Solver, solved: Solved, d: Array, dx: Array) -> tuple[Array, Array]:

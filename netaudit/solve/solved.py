@@ -64,9 +64,7 @@ class Solved:
             return np.asarray(a[member]) if a.ndim > axes else a
 
         num = self.num.take(np.array([member])) if self.num.batch else self.num
-        groups = tuple(
-            (f, i, {k: v.reshape(-1) for k, v in p.items()}) for f, i, p in num.branches.groups
-        )
+        groups = tuple((f, i, {k: v.reshape(-1) for k, v in p.items()}) for f, i, p in num.branches.groups)
         flat = Numbers(
             num.g.reshape(-1), num.s.reshape(-1), num.inject.reshape(-1), num.sense.reshape(-1),
             type(num.branches)(groups, num.branches.m), (),

@@ -41,9 +41,13 @@ def stability(jacobian: Array, is_node: np.ndarray) -> Stability:
     symmetric = float(np.abs(scaled - scaled.T).max()) <= _SYMMETRIC * float(np.abs(scaled).max())
     lowest = float(np.linalg.eigvalsh(0.5 * (scaled + scaled.T)).min())
     if symmetric and lowest < -1e-9:
-        return Stability(False, "a small push grows whatever the capacitances (symmetric Jacobian, negative eigenvalue)")
+        return Stability(
+            False, "a small push grows whatever the capacitances (symmetric Jacobian, negative eigenvalue)"
+        )
     if sign < 0 and log > -200:
-        return Stability(False, "a small push grows whatever the capacitances (the Jacobian's determinant has the wrong sign)")
+        return Stability(
+            False, "a small push grows whatever the capacitances (the Jacobian's determinant has the wrong sign)"
+        )
     if lowest > 1e-12:
         return Stability(True, "it decays with any capacitances (positive definite)")
     rates = np.linalg.eigvals(s).real

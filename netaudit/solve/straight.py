@@ -14,7 +14,7 @@ import numpy as np
 
 from netaudit.devices.base import Array
 from netaudit.solve.linear import Dense
-from netaudit.solve.system import Numbers, System
+from netaudit.solve.system import Index, Numbers, System
 
 _THRESHOLD = 0.05
 #: members taken at a time, so that all nonzeros of a slice stay in the cache
@@ -41,7 +41,7 @@ class Program:
     steps: tuple[Step, ...]
 
 
-def plan(rows: Array, columns: Array, values: Array, n: int) -> Program | None:
+def plan(rows: Index, columns: Index, values: Array, n: int) -> Program | None:
     """The elimination order for a pattern with the values of one board; None where no pivot is usable."""
     slot: list[dict[int, int]] = [{} for _ in range(n)]
     number: list[dict[int, float]] = [{} for _ in range(n)]
@@ -118,7 +118,9 @@ class Straight:
     ) -> tuple[Array, Array]:
         if shift is not None:
             return self._dense.solve(system, num, slope, right, turn, shift)
-        entries = np.ascontiguousarray(np.broadcast_to(system.jacobian_entries(num, slope), (len(right), len(system.pattern_row))).T)
+        entries = np.ascontiguousarray(
+            np.broadcast_to(system.jacobian_entries(num, slope), (len(right), len(system.pattern_row))).T
+        )
         x = np.empty_like(right)
         for start in range(0, len(right), _SLICE):
             stop = min(start + _SLICE, len(right))

@@ -9,7 +9,6 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass, replace
-from typing import cast
 
 import numpy as np
 from numpy.typing import NDArray
@@ -19,8 +18,8 @@ from netaudit.devices import KINDS
 from netaudit.devices.base import Array, Device, Value, Values
 from netaudit.devices.families import Family
 from netaudit.solve.branches import BranchGroups
-from netaudit.solve.reference import carried, references
 from netaudit.solve.record import Recorder, stack
+from netaudit.solve.reference import carried, references
 from netaudit.solve.segment import SegmentSum
 
 Index = NDArray[np.intp]
@@ -79,8 +78,8 @@ class System:
         record = Recorder(len(self.pins))
         air: Value = self.circuit.ambient.nominal if ambient is None else ambient
         changed: dict[str, dict[str, Value]] = {}
-        for (device, name), value in overrides.items():
-            changed.setdefault(device, {})[name] = value
+        for (owner, name), value in overrides.items():
+            changed.setdefault(owner, {})[name] = value
         for k, device in enumerate(self.devices):
             numbers: dict[str, Value] = {name: q.nominal for name, q in device.values.items()}
             numbers.update(changed.get(device.name, {}))
@@ -94,7 +93,9 @@ class System:
         pins = len(self.pins)
         handles = pins + len(record.inner_names)
         self.inner = {key: pins + k for k, key in enumerate(record.inner_names)}
-        self.handle_device: Index = np.array([k for k, _ in self.pins] + [k for k, _ in record.inner_names], dtype=np.intp)
+        self.handle_device: Index = np.array(
+            [k for k, _ in self.pins] + [k for k, _ in record.inner_names], dtype=np.intp
+        )
         free = [k for k, net in enumerate(self.nets) if net not in self.reference_nets]
         position = np.full(len(self.nets), -1, dtype=np.intp)
         position[free] = np.arange(len(free))
@@ -214,7 +215,7 @@ class System:
 
     def pin_voltages(self, x: Array) -> Array:
         """Volts at every pin, shape (..., pins)."""
-        return cast(Array, self.extended(x)[..., self.position[: len(self.pins)]])
+        return self.extended(x)[..., self.position[: len(self.pins)]]
 
     def powers(self, x: Array, handle_sums: Array) -> Array:
         """Watts that each device turns into heat: the sum over its pins of voltage times current into the pin."""

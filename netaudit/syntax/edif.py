@@ -71,7 +71,9 @@ class Flattener:
             pins = on_pin.get(placed.name.key, {})
             if target is not None and target.placed:
                 if target.key in level.above:
-                    raise self._fail(f"cell {target.name} contains itself", placed.line, "break the cycle in the export")
+                    raise self._fail(
+                        f"cell {target.name} contains itself", placed.line, "break the cycle in the export"
+                    )
                 inner = f"{level.path}{self._name(placed)}/"
                 yield _Level(target, inner, pins, (*level.above, target.key))
             else:

@@ -247,7 +247,10 @@ class Reader:
         atoms = reference.atoms()
         if not atoms:
             raise self.fail("(cellRef) names no cell", reference.line)
-        return (identifier(inside.atoms()[0]) if inside is not None and inside.atoms() else library, identifier(atoms[0]))
+        return (
+            identifier(inside.atoms()[0]) if inside is not None and inside.atoms() else library,
+            identifier(atoms[0]),
+        )
 
     def name_of(self, form: Form) -> Name:
         """The name that a form defines, its first item: IDENT, (rename IDENT "original"), (array NAME size), (name …)."""
@@ -334,7 +337,9 @@ class Reader:
                 continue
             key = self.cell_key(reference, "")
             if key not in self.cells:
-                raise self.fail(f"the design names cell {key[1]} of library {key[0]}, which is not there", reference.line)
+                raise self.fail(
+                    f"the design names cell {key[1]} of library {key[0]}, which is not there", reference.line
+                )
             return self.cells[key]
         drawn = [c for c in self.cells.values() if c.placed]
         if not drawn:

@@ -102,7 +102,9 @@ def _unbalanced(text: str, file: str, error: Exception) -> InputError:
             mend="the file is cut short: export it again",
         )
     where = int(getattr(error, "line", 1) or 1)
-    return InputError("this is not an EDIF file", place=Place(file, max(where, 1)), mend="it must begin with (edif ...)")
+    return InputError(
+        "this is not an EDIF file", place=Place(file, max(where, 1)), mend="it must begin with (edif ...)"
+    )
 
 
 def string(item: str) -> str:

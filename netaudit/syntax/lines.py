@@ -95,4 +95,4 @@ def _without_comment(source: str, file: str, number: int, chain: tuple[Place, ..
 
 
 def _inside_quotes(body: str) -> bool:
-    return body.replace('\\\\', "").replace('\\"', "").count('"') % 2 == 1
+    return body.replace("\\\\", "").replace('\\"', "").count('"') % 2 == 1

@@ -11,10 +11,18 @@ from netaudit.syntax.lines import LogicalLine
 #: (pattern, what is wrong, what would mend it); the place is the pattern's first group
 _KNOWN: tuple[tuple[re.Pattern[str], str, str], ...] = (
     (re.compile(r"([\u201c\u201d\u201e\u2018\u2019])"), "a typographic quote", 'use the straight "'),
-    (re.compile(r'^[^"]*(?:"(?:\\["\\]|[^"\\])*"[^"]*)*(")[^"]*$'), "a quote that is never closed", 'add the closing "'),
+    (
+        re.compile(r'^[^"]*(?:"(?:\\["\\]|[^"\\])*"[^"]*)*(")[^"]*$'),
+        "a quote that is never closed",
+        'add the closing "',
+    ),
     (re.compile(r'"(?:[^"\\]|\\["\\])*(\\)[^"\\]'), "an unknown escape", 'only \\" and \\\\ are escapes'),
     (re.compile(r"\S(\s+[:=]|[:=]\s+|[:=]$)"), "a blank beside : or =", "write PIN:NET and key=value without blanks"),
-    (re.compile(r"(,\s|\s,|,$)"), "a comma between items", "items are parted by blanks, a comma joins value and tolerance"),
+    (
+        re.compile(r"(,\s|\s,|,$)"),
+        "a comma between items",
+        "items are parted by blanks, a comma joins value and tolerance",
+    ),
     (re.compile(r"\S+=\S*?(:)\S*"), "a : in the value of a key", "put the value in double quotes"),
     (re.compile(r"\S+:\S*?(:)\S*"), "a second : in PIN:NET", "a net name with a colon needs double quotes"),
     (re.compile(r"\S+=\S*(=)\S*"), "a second = in key=value", "put the value in double quotes"),
@@ -35,7 +43,9 @@ def explain(line: LogicalLine, error: Any, first: bool) -> InputError:
     words = text.split()
     if first and words and words[0] != "netlist":
         begin = len(text) - len(text.lstrip())
-        return InputError("this does not begin with netlist 1", place=line.place(begin), mend="begin it with: netlist 1")
+        return InputError(
+            "this does not begin with netlist 1", place=line.place(begin), mend="begin it with: netlist 1"
+        )
     at_end = start is None or start >= len(text.rstrip()) or (token is not None and token.type == "$END")
     if at_end:
         return InputError(
@@ -43,6 +53,7 @@ def explain(line: LogicalLine, error: Any, first: bool) -> InputError:
             place=line.place(len(text.rstrip()) - 1, len(text.rstrip())),
             mend=_SHAPES.get(words[0], "a device is written: DESIGNATOR KIND value PIN:NET ..."),
         )
+    start = start or 0
     found = re.match(r"\S+", text[start:])
     word = found.group() if found else text[start : start + 1]
     return InputError(

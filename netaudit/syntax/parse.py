@@ -36,7 +36,24 @@ from netaudit.syntax.statements import (
 _NAME = re.compile(r"^[A-Za-z0-9_+\-./~]+$")
 _SPLIT = re.compile(r'("(?:\\["\\]|[^"\\])*"|[^":=]+)([:=]|$)')
 _RESERVED = frozenset(
-    "netlist title parts include ground ambient omit place set only mode end block expect same-heat covered".split()
+    [
+        "netlist",
+        "title",
+        "parts",
+        "include",
+        "ground",
+        "ambient",
+        "omit",
+        "place",
+        "set",
+        "only",
+        "mode",
+        "end",
+        "block",
+        "expect",
+        "same-heat",
+        "covered",
+    ]
 )
 
 
@@ -185,7 +202,9 @@ def _make_parts(line: LogicalLine, c: list[Any]) -> Statement:
     word = _word(line, c[0])
     if not word.quoted and word.text != "common":
         raise InputError(
-            f"parts {word.text}", place=word.place, mend=f'a file stands in quotes: parts "{word.text}", or: parts common'
+            f"parts {word.text}",
+            place=word.place,
+            mend=f'a file stands in quotes: parts "{word.text}", or: parts common',
         )
     return PartsStatement(word, "", _whole(line))
 
@@ -210,7 +229,9 @@ def _make_change(line: LogicalLine, c: list[Any]) -> Statement:
     items = _items(line, c[1:])
     if items.pins:
         pin = items.pins[0].pin
-        raise InputError("set changes values and states, not pins", place=pin.place, mend="use two devices and omit one")
+        raise InputError(
+            "set changes values and states, not pins", place=pin.place, mend="use two devices and omit one"
+        )
     if not items.words and not items.keys:
         raise InputError("set without a change", place=_whole(line), mend="say what changes: set R1 1k")
     return SetStatement(_name(line, c[0], "designator"), items, _whole(line))
@@ -265,7 +286,9 @@ def _make_expect(line: LogicalLine, c: list[Any]) -> Statement:
     quantity = _word(line, c[0])
     most = 2 if quantity.text == "voltage" else 1
     if len(targets) > most:
-        raise InputError(f"{len(targets)} targets of one {quantity.text}", place=targets[-1].place, mend=f"at most {most}")
+        raise InputError(
+            f"{len(targets)} targets of one {quantity.text}", place=targets[-1].place, mend=f"at most {most}"
+        )
     return ExpectStatement(quantity, tuple(targets), pin, span, mode, _whole(line))
 
 

@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import hashlib
-
 from dataclasses import dataclass, field, replace
 from pathlib import Path
 
@@ -63,7 +62,9 @@ def read_bytes(path: str, shown: str, place: Place | None) -> bytes:
             raise InputError(f"{shown} is a folder", place=place, mend="name a file in it")
         size = Path(path).stat().st_size
         if size > LARGEST_FILE:
-            raise InputError(f"{shown} has {size >> 20} MiB", place=place, mend=f"at most {LARGEST_FILE >> 20} are read")
+            raise InputError(
+                f"{shown} has {size >> 20} MiB", place=place, mend=f"at most {LARGEST_FILE >> 20} are read"
+            )
         return Path(path).read_bytes()
     except (OSError, ValueError) as error:
         reason = getattr(error, "strerror", None) or str(error)
@@ -201,5 +202,3 @@ def _closed(mark: Mark, body: list[Statement]) -> Statement:
                 mend="is the block's end missing above?",
             )
     return BlockStatement(mark.name, mark.pins, mark.defaults, tuple(body), mark.place)
-
-

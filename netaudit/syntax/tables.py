@@ -66,9 +66,7 @@ def read_table(data: bytes, file: str, columns: dict[str, tuple[str, ...]] | Non
     nets: dict[str, None] = {}
     for row in rows[1:]:
         (_connection if connections else _listed)(row, headings, parts, nets, file)
-    instances = tuple(
-        Instance(name, name, "", tuple(p.properties), p.pins, p.place) for name, p in parts.items()
-    )
+    instances = tuple(Instance(name, name, "", tuple(p.properties), p.pins, p.place) for name, p in parts.items())
     remarks = () if encoding == "utf-8" else (f"the file is not UTF-8: read as {encoding}",)
     return Export(file, instances, tuple(nets), remarks, encoding)
 
@@ -86,7 +84,9 @@ def _rows(text: str, file: str) -> Iterator[_Row]:
                 yield _Row(cells, line)
             line = reader.line_num + 1
     except csv.Error as error:
-        raise InputError(f"the table cannot be read: {error}", place=Place(file, line), mend="check the quotes") from None
+        raise InputError(
+            f"the table cannot be read: {error}", place=Place(file, line), mend="check the quotes"
+        ) from None
 
 
 def _separator(text: str) -> str:
@@ -121,9 +121,7 @@ def _cell(row: _Row, number: int) -> str:
     return row.cells[number].strip() if number < len(row.cells) else ""
 
 
-def _connection(
-    row: _Row, headings: Headings, parts: dict[str, _Part], nets: dict[str, None], file: str
-) -> None:
+def _connection(row: _Row, headings: Headings, parts: dict[str, _Part], nets: dict[str, None], file: str) -> None:
     place = Place(file, row.line)
     designator, pin, net = (_cell(row, headings.columns[c]) for c in ("designator", "pin", "net"))
     for what, text in (("designator", designator), ("pin", pin)):
