@@ -15,6 +15,7 @@ False
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from typing import TYPE_CHECKING
 
 __version__ = "0.1.0"
@@ -22,18 +23,29 @@ __version__ = "0.1.0"
 if TYPE_CHECKING:
     from netaudit.interface import LoadedBoard
 
-__all__ = ["__version__", "load", "loads"]
+__all__ = ["__version__", "explain", "load", "loads"]
 
 
-def load(path: str, root: str | None = None) -> LoadedBoard:
-    """A netlist from a file, with everything it includes.  Raises ``netaudit.failure.InputError``."""
+def load(path: str, root: str | None = None, changes: Sequence[str] = ()) -> LoadedBoard:
+    """A netlist from a file, with everything it includes.
+
+    ``root``: nothing outside that folder is read; ``changes``: settings such as ``R1=1k`` that hold in every mode.
+    Raises ``netaudit.failure.InputError`` for anything that cannot be used.
+    """
     from netaudit.interface import LoadedBoard
 
-    return LoadedBoard.from_file(path, root)
+    return LoadedBoard.from_file(path, root, changes)
 
 
-def loads(text: str, name: str = "netlist") -> LoadedBoard:
+def loads(text: str, name: str = "netlist", changes: Sequence[str] = ()) -> LoadedBoard:
     """A netlist from a text; ``name`` stands for its file in messages."""
     from netaudit.interface import LoadedBoard
 
-    return LoadedBoard.from_text(text, name)
+    return LoadedBoard.from_text(text, name, changes)
+
+
+def explain(name: str | None = None) -> str:
+    """The page of a rule or a device kind; without a name, the list of both.  Raises ``netaudit.failure.InputError``."""
+    from netaudit.report.pages import page
+
+    return page(name)

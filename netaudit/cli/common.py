@@ -3,11 +3,13 @@
 from __future__ import annotations
 
 import argparse
+import contextlib
+import os
 import sys
 from collections.abc import Callable
 from typing import Any
 
-from netaudit.failure import InputError
+from netaudit.failure import InputError, printable
 from netaudit.finding import LEVELS
 from netaudit.interface import LoadedBoard
 from netaudit.report.style import Style
@@ -27,12 +29,15 @@ def add_files(command: argparse.ArgumentParser) -> None:
         default=[],
         metavar="R1=1k",
         dest="changes",
-        help="change a value or state in every mode",
+        help="change a value or state in every mode; repeatable",
     )
+    command.add_argument("-o", "--output", metavar="FILE", help="write the report to a file instead of stdout")
 
 
 def add_modes(command: argparse.ArgumentParser) -> None:
-    command.add_argument("--mode", action="append", default=[], metavar="NAME", dest="modes", help="only this mode")
+    command.add_argument(
+        "--mode", action="append", default=[], metavar="NAME", dest="modes", help="only this mode; repeatable"
+    )
 
 
 def add_fail_on(command: argparse.ArgumentParser) -> None:
@@ -57,29 +62,51 @@ def each(
 
     ``work`` gives the status, the JSON record and the text of one board.
     """
-    from netaudit.cli.main import refuse
-
-    style = Style.for_stream(sys.stdout.isatty())
+    style = Style.for_stream(sys.stdout.isatty() and options.output is None)
+    several = len(options.files) > 1
     records: list[dict[str, Any]] = []
+    texts: list[str] = []
     status = 0
-    for number, path in enumerate(options.files):
+    for path in options.files:
         try:
             result, record, text = work(load(options, path), style)
         except InputError as error:
-            if len(options.files) == 1:
+            if not several:
                 raise
             refuse(error)
-            result, record, text = 2, {"netlist": path, "error": str(error)}, ""
+            result, record, text = 2, {"netlist": path, "error": str(error)}, f"{error}\n"
         status = max(status, result)
-        if options.format == "json":
-            records.append(record or {})
-        elif text:
-            sys.stdout.write(text if not number else "\n" + text)
+        records.append(record or {})
+        texts.append(text)
     if options.format == "json":
         from netaudit.report.json_text import dumps
 
-        single = len(options.files) == 1
-        sys.stdout.write(
-            dumps(records[0] if single else {"schema": f"netaudit/{kind}-set/1", "boards": records}) + "\n"
-        )
+        whole = {"schema": f"netaudit/{kind}-set/1", "boards": records} if several else records[0]
+        deliver(dumps(whole) + "\n", options.output)
+    else:
+        deliver("\n".join(texts), options.output)
     return status
+
+
+def deliver(text: str, path: str | None) -> None:
+    """Writes a report to stdout, or whole to a file: a reader of that file never sees half of it."""
+    if path is None:
+        sys.stdout.write(text)
+        return
+    temporary = f"{path}.{os.getpid()}.part"
+    try:
+        with open(temporary, "w", encoding="utf-8", newline="\n") as stream:
+            stream.write(text)
+        os.replace(temporary, path)
+    except OSError as error:
+        with contextlib.suppress(OSError):
+            os.unlink(temporary)
+        raise InputError(f"{path} cannot be written: {error.strerror}", mend="choose another -o") from None
+
+
+def refuse(error: InputError) -> int:
+    """One line on stderr; the source line with a caret follows only on a terminal."""
+    print(str(error), file=sys.stderr)
+    if error.place is not None and sys.stderr.isatty() and error.place.caret():
+        print("\n".join(printable(line) for line in error.place.caret().split("\n")), file=sys.stderr)
+    return 2

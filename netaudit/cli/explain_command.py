@@ -6,7 +6,7 @@ import argparse
 import sys
 from typing import Any
 
-from netaudit.failure import InputError
+from netaudit import explain
 
 
 def add(commands: Any) -> None:
@@ -21,16 +21,5 @@ def add(commands: Any) -> None:
 
 
 def run(options: argparse.Namespace) -> int:
-    from netaudit.report.pages import index_page, kind_page, rule_page
-
-    page = index_page() if options.name is None else rule_page(options.name) or kind_page(options.name)
-    if page is None:
-        from netaudit.audit.rules import RULES
-        from netaudit.devices import KINDS
-        from netaudit.syntax.suggest import closest
-
-        near = closest(options.name, [*RULES, *KINDS])
-        mend = f"did you mean {near}?" if near else "netaudit explain lists them"
-        raise InputError(f"there is no rule or kind {options.name}", mend=mend)
-    sys.stdout.write(page)
+    sys.stdout.write(explain(options.name))
     return 0

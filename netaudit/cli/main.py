@@ -13,6 +13,7 @@ from collections.abc import Sequence
 
 from netaudit import __version__
 from netaudit.cli import audit_command, explain_command, lint_command, solve_command
+from netaudit.cli.common import refuse
 from netaudit.failure import InputError
 
 _EPILOG = """\
@@ -73,14 +74,6 @@ def main(arguments: Sequence[str] | None = None) -> int:
         traceback.print_exc()
         print("netaudit: this is a fault of netaudit itself; please report it with the netlist", file=sys.stderr)
         return 3
-
-
-def refuse(error: InputError) -> int:
-    """One line on stderr; the source line with a caret follows only on a terminal."""
-    print(str(error), file=sys.stderr)
-    if error.place is not None and sys.stderr.isatty() and error.place.caret():
-        print(error.place.caret(), file=sys.stderr)
-    return 2
 
 
 def run() -> None:

@@ -167,7 +167,8 @@ def _point_record(result: ModeResult, point: Point) -> dict[str, Any]:
 
 
 CAUTIONS = (
-    "The result rests on the models and ratings that were given; it replaces no qualified review and no bench measurement.",
+    "The result rests on the models and ratings that were given; it replaces no qualified review and no bench "
+    "measurement.",
     "DC operating points only: no pulse, surge, switching or AC stress is looked at.",
     "Mains and hazardous energy fall under local codes and licensed practice.",
 )

@@ -8,7 +8,19 @@ import sys
 from netaudit.audit.rules import PAGES, RULES
 from netaudit.devices import KINDS
 from netaudit.devices.base import Key, Kind
+from netaudit.failure import InputError
 from netaudit.parts.names import PARAMETERS, RATINGS
+from netaudit.syntax.suggest import closest
+
+
+def page(name: str | None) -> str:
+    """The page of a rule or a kind, the index without a name.  Raises InputError when there is no such thing."""
+    found = index_page() if name is None else rule_page(name) or kind_page(name)
+    if found is None:
+        near = closest(name or "", [*RULES, *KINDS])
+        mend = f"did you mean {near}?" if near else "netaudit explain lists them"
+        raise InputError(f"there is no rule or kind {name}", mend=mend)
+    return found
 
 
 def rule_page(name: str) -> str | None:

@@ -2,10 +2,11 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping, Sequence
+from collections.abc import Callable, Iterable, Mapping, Sequence
 
 from netaudit.audit.records import Audit, Stress
 from netaudit.circuit.circuit import Board
+from netaudit.failure import printable
 from netaudit.finding import Finding
 from netaudit.quantities.write import engineering
 from netaudit.report.json_text import CAUTIONS
@@ -13,60 +14,81 @@ from netaudit.report.style import Style, table, wrapped
 from netaudit.solve.point import ModeResult, Point
 
 _SHOWN_STRESSES = 25
+_SHOWN_NAMES = 12
+_SHOWN_CORNER = 5
 
 
 def findings_text(findings: Sequence[Finding], style: Style, notes: bool) -> Iterable[str]:
-    """One sentence a finding; notes of one rule folded together unless asked for."""
+    """One sentence a finding, the same thing in several modes once; notes of one rule folded unless asked for."""
     loud = [f for f in findings if f.level != "note" or notes]
-    for f in loud:
+    for group in _grouped(loud, _thing):
+        f = group[0]
         where = f"{f.file}:{f.line}" if f.file and f.line else (f.file or "")
-        mode = f" [{f.mode}]" if f.mode and f.mode != "normal" else ""
-        head = f"{style.level(f.level)} {f.rule}{mode}  {style.faint(where)}"
-        yield head
+        modes = list(dict.fromkeys(g.mode for g in group if g.mode))
+        shown = f" [{printable(', '.join(modes))}]" if modes and modes != ["normal"] else ""
+        yield f"{style.level(f.level)} {f.rule}{shown}  {style.faint(printable(where))}"
         yield from wrapped(f.message, style.width, "    ")
     quiet = [f for f in findings if f.level == "note" and not notes]
+    for group in _grouped(quiet, lambda f: (f.rule,)):
+        names = list(dict.fromkeys(f.device or f.net for f in group if f.device or f.net))
+        yield f"{style.level('note')} {group[0].rule}"
+        if names:
+            more = f" and {len(names) - _SHOWN_NAMES} more" if len(names) > _SHOWN_NAMES else ""
+            yield from wrapped(", ".join(str(n) for n in names[:_SHOWN_NAMES]) + more, style.width, "    ")
+        else:
+            yield from wrapped(group[0].message, style.width, "    ")
     if quiet:
-        by_rule: dict[str, list[Finding]] = {}
-        for f in quiet:
-            by_rule.setdefault(f.rule, []).append(f)
-        for rule, group in by_rule.items():
-            names = [f.device or f.net for f in group if f.device or f.net]
-            said = f": {', '.join(str(n) for n in names[:8])}{' …' if len(names) > 8 else ''}" if names else ""
-            if not names:
-                yield f"{style.level('note')} {rule}"
-                yield from wrapped(group[0].message, style.width, "    ")
-            else:
-                yield f"{style.level('note')} {rule}  {len(group)} parts{said}"
         yield style.faint("    --notes shows every note in full")
 
 
+def _thing(f: Finding) -> tuple[object, ...]:
+    """What a finding is about, whatever the mode."""
+    return (f.rule, f.level, f.device, f.net, f.pin, f.quantity, f.variant, f.file, f.line)
+
+
+def _grouped(findings: Iterable[Finding], key: Callable[[Finding], tuple[object, ...]]) -> list[list[Finding]]:
+    """Findings of one key together, in the order in which each key comes first."""
+    groups: dict[tuple[object, ...], list[Finding]] = {}
+    for f in findings:
+        groups.setdefault(key(f), []).append(f)
+    return list(groups.values())
+
+
 def lint_text(board: Board, findings: Sequence[Finding], failed: bool, style: Style, notes: bool) -> str:
+    """The report of ``lint``."""
     lines = [_headline(board, failed, style, "lint"), ""]
     lines += findings_text(findings, style, notes)
-    lines.append(_counted(findings))
+    lines += [_counted(findings), "", "Structure only: nothing was solved, no rating was looked at."]
     return "\n".join(lines) + "\n"
 
 
 def audit_text(audit: Audit, failed: bool, style: Style, notes: bool, version: str) -> str:
-    board = audit.board
-    lines = [_headline(board, failed, style, "audit"), *_coverage(audit, style), ""]
+    """The report of ``audit``: verdict, coverage, findings worst first, stresses, how sure it is, cautions."""
+    lines = [_headline(audit.board, failed, style, "audit"), *_coverage(audit, style), ""]
     lines += findings_text(audit.findings, style, notes)
-    lines += ["", *_stresses(audit.stresses, style), ""]
-    for result in audit.results:
-        lines += wrapped(_uniqueness(result), style.width, "")
-    if not board.ambient_stated:
-        lines += wrapped("The ambient is not stated: 25 degC is assumed.", style.width, "")
-    if audit.generic:
-        lines += wrapped(f"Generic classes, not the parts' own data: {', '.join(audit.generic)}.", style.width, "")
-    lines += [c for caution in board.cautions for c in wrapped(caution, style.width, "")]
+    lines += ["", *_stresses(audit, style), ""]
+    lines += [c for text in _remarks(audit) for c in wrapped(text, style.width, "")]
     lines += ["", *(c for caution in CAUTIONS for c in wrapped(caution, style.width, ""))]
     lines.append(style.faint(f"netaudit {version}, policy {audit.policy}"))
     return "\n".join(lines) + "\n"
 
 
+def _remarks(audit: Audit) -> Iterable[str]:
+    """What the result rests on."""
+    for result in audit.results:
+        yield _uniqueness(result)
+    if not audit.board.ambient_stated:
+        yield "The ambient is not stated: 25 degC is assumed."
+    if audit.without_row:
+        yield f"The policy {audit.policy} does not speak of {', '.join(audit.without_row)}: the full rating counts there."
+    if audit.generic:
+        yield f"Generic classes, not the parts' own data: {', '.join(audit.generic)}."
+    yield from audit.board.cautions
+
+
 def _headline(board: Board, failed: bool, style: Style, what: str) -> str:
     title = f"  {board.title}" if board.title else ""
-    return f"{style.verdict(failed)}  {what} of {board.name}{title}"
+    return f"{style.verdict(failed)}  {printable(f'{what} of {board.name}{title}')}"
 
 
 def _counted(findings: Sequence[Finding]) -> str:
@@ -89,37 +111,45 @@ def _coverage(audit: Audit, style: Style) -> list[str]:
     return [line for text in said for line in wrapped(text, style.width, "")]
 
 
-def _stresses(stresses: Sequence[Stress], style: Style) -> list[str]:
-    rated = [s for s in stresses if s.limit is not None]
+def _stresses(audit: Audit, style: Style) -> list[str]:
+    """The table of stresses against limits, each in its worst mode."""
+    rated = _worst_modes(audit.stresses)
     if not rated:
         return ["No stress could be compared with a rating."]
+    many = len(audit.results) > 1
     rows = [["part", "stress", "nominal", "worst", "limit", "ratio", "proof", "at"]]
-    for s in rated[:_SHOWN_STRESSES]:
-        assert s.limit is not None
-        ratio = "-" if s.ratio is None else f"{'≥' if s.lower_bound else ''}{s.ratio * 100:.0f} %"
-        mode = f"{s.mode}: " if s.mode != "normal" else ""
-        rows.append(
-            [
-                s.device,
-                s.quantity.replace("-", " "),
-                engineering(s.nominal, s.unit),
-                engineering(s.worst, s.unit),
-                engineering(s.limit, s.unit),
-                ratio,
-                s.proof,
-                mode + corner(s.corner) + (f" ({s.variant})" if s.variant else ""),
-            ]
-        )
+    rows += [_stress_row(s, audit, many) for s in rated[:_SHOWN_STRESSES]]
     lines = table(rows, style)
     if len(rated) > _SHOWN_STRESSES:
         lines.append(style.faint(f"and {len(rated) - _SHOWN_STRESSES} smaller ones (--format json lists all)"))
     return lines
 
 
-def corner(values: Mapping[str, float]) -> str:
-    """``PS1=13.2 R1=95``."""
-    shown = [f"{k}={v:.4g}" for k, v in list(values.items())[:5]]
-    return " ".join(shown) + (" …" if len(values) > 5 else "") if shown else "nominal"
+def _worst_modes(stresses: Sequence[Stress]) -> list[Stress]:
+    """Of each part and quantity the worst mode; what has a limit of 0 and is not stressed at all is left out."""
+    first: dict[tuple[object, ...], Stress] = {}
+    for s in stresses:
+        if s.limit is not None and (s.ratio is not None or s.worst > 0):
+            first.setdefault((s.device, s.quantity, s.pin, s.variant), s)
+    return list(first.values())
+
+
+def _stress_row(s: Stress, audit: Audit, many: bool) -> list[str]:
+    assert s.limit is not None
+    ratio = "-" if s.ratio is None else f"{'≥' if s.lower_bound else ''}{s.ratio * 100:.0f} %"
+    proof = s.proof if s.bound is None else f"{s.proof} {engineering(s.bound, s.unit)}"
+    at = (f"{s.mode}: " if many else "") + corner(s.corner, audit.units) + (f" ({s.variant})" if s.variant else "")
+    numbers = [engineering(x, s.unit) for x in (s.nominal, s.worst, s.limit)]
+    return [s.device, s.quantity.replace("-", " ") + (f" {s.pin}" if s.pin else ""), *numbers, ratio, proof, at]
+
+
+def corner(values: Mapping[str, float], units: Mapping[str, str]) -> str:
+    """``PS1=13.2V R1=95ohm``."""
+    shown = [
+        f"{key}={engineering(v, units[key], 4).replace(' ', '') if key in units else f'{v:.4g}'}"
+        for key, v in list(values.items())[:_SHOWN_CORNER]
+    ]
+    return " ".join(shown) + (" …" if len(values) > _SHOWN_CORNER else "") if shown else "nominal"
 
 
 def _uniqueness(result: ModeResult) -> str:
