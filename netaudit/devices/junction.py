@@ -46,7 +46,7 @@ def log_saturation(values: Values, n: Value) -> Value:
     else:
         growth = np.asarray(values["E_g"]) * CHARGE / (np.asarray(n) * BOLTZMANN)
         log = log + np.asarray(values["exponent"]) / np.asarray(n) * np.log(t / t0) + growth * (1 / t0 - 1 / t)
-    return log - np.asarray(values.get("V_F", 0.0)) / (np.asarray(n) * vt)
+    return np.asarray(log - np.asarray(values.get("V_F", 0.0)) / (np.asarray(n) * vt), dtype=float)
 
 
 def forward(a: Assembly, values: Values, p: int, q: int) -> None:

@@ -41,7 +41,13 @@ def levels(solver: Solver, k: int, num: Numbers) -> list[float]:
         return [offset - 1.0, offset + 1.0]
     if isinstance(family, Table):
         return _turning(family)
-    return [0.5, 2.0, 6.0]
+    return [share * reach(solver) for share in (0.03, 0.3, 0.65, 1.0)]
+
+
+def reach(solver: Solver) -> float:
+    """The sum of all supplies' voltages: what no branch of a net without gain can exceed."""
+    volts = [abs(d.nominal("value", 0.0)) for d in solver.system.devices if d.kind == "supply"]
+    return max(sum(volts), 1.0)
 
 
 def _turning(family: Table) -> list[float]:

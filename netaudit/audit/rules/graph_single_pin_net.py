@@ -30,17 +30,17 @@ def find(site: Site) -> Iterable[Finding]:
         pins = site.graph.on_net[net]
         if len(pins) != 1 or net in fitted_elsewhere or len(pins_anywhere.get(net, ())) > 1:
             continue
-        pin = pins[0]
+        only = pins[0]
         if net in site.graph.circuit.grounds and len(site.graph.circuit.grounds) == 1:
             continue
         yield Finding(
             RULE.name,
             RULE.level,
-            f"net {net} has a single pin, {pin.device.name}:{pin.name}: join it to something, or write "
-            f"{pin.name}:nc if it stays open on purpose",
+            f"net {net} has a single pin, {only.device.name}:{only.name}: join it to something, or write "
+            f"{only.name}:nc if it stays open on purpose",
             net=net,
-            pin=pin.name,
-            **about(pin.device),  # type: ignore[arg-type]  # the mapping's keys are the field names
+            pin=only.name,
+            **about(only.device),  # type: ignore[arg-type]  # the mapping's keys are the field names
         )
 
 

@@ -20,9 +20,9 @@ def find(site: Site) -> Iterable[Finding]:
     graph = site.graph
     grounds = {graph.islands.find(net) for net in graph.circuit.grounds}
     with_contacts = graph.joined(graph.circuit.devices)
-    for device, pins in graph.open_contacts():
-        for pin in pins[1:]:
-            with_contacts.join(device.pins[pin], device.pins[pins[0]])
+    for device, contact in graph.open_contacts():
+        for pin in contact[1:]:
+            with_contacts.join(device.pins[pin], device.pins[contact[0]])
     referenced = {with_contacts.find(net) for net in graph.circuit.grounds}
     for island, nets in graph.islands.members().items():
         if island in grounds:
