@@ -139,9 +139,18 @@ def _audit_mode(board: Board, operation: Operation, result: ModeResult, options:
     _variants(operation.circuit, out, options)
     out.stresses = _worst_of(out.stresses)
     devices = {d.name: d for d in operation.circuit.devices}
-    for stress in out.stresses:
+    for stress in _told_once(out.stresses):
         out.findings += findings_of(stress, devices[stress.device], out.units)
     return out
+
+
+def _told_once(stresses: Sequence[Stress]) -> Iterable[Stress]:
+    """Stresses worth a finding: one of a second solution only where it is worse than the first one's."""
+    first = {(s.device, s.quantity, s.pin): _badness(s) for s in stresses if s.variant is None}
+    for s in stresses:
+        known = first.get((s.device, s.quantity, s.pin))
+        if s.variant is None or known is None or _badness(s) > (known[0], known[1] * (1 + 1e-6), known[2]):
+            yield s
 
 
 def _explore(

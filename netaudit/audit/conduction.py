@@ -66,7 +66,7 @@ def _alone_feeds(circuit: Circuit, name: str) -> bool:
     with_it = _in_loop(graph, sources)
     edges = [(a, b, k) for a, b, k, d in graph.edges(keys=True, data="device") if d == name]
     graph.remove_edges_from(edges)
-    lost = with_it - _in_loop(graph, sources) - {name}
+    lost = with_it - _in_loop(graph, sources) - sources - {name}
     if not lost:
         return False
     nets = {net for d in circuit.devices if d.name in lost for net in d.pins.values()} - set(circuit.grounds)

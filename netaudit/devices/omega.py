@@ -26,6 +26,6 @@ def wright_omega(x: Array) -> Array:
             one = 1.0 + w
             t = 2.0 * one * (one + (2.0 / 3.0) * r)
             w = w * (1.0 + (r / one) * (t - r) / (t - 2.0 * r))
-    return np.asarray(
-        np.where(x < -700.0, np.exp(np.maximum(x, -745.2)) * (x > -745.2), np.where(np.isposinf(x), x, w))
-    )
+    # below -700 the clipped start is the answer itself: w = exp(x), down to where that underflows
+    tiny = np.where(x > -745.2, np.exp(np.clip(x, -745.2, -700.0)), 0.0)
+    return np.asarray(np.where(x < -700.0, tiny, np.where(np.isposinf(x), x, w)))

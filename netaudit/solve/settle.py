@@ -96,7 +96,7 @@ class Solver:
             slope = board.num.branches.value(board.u)[1]
             still = np.zeros((1, self.system.n))
             z = self.linear.solve(self.system, board.num, slope, still, 0)[1]
-            self._straight = Straight.build(self.system, board.num, slope[0], seen_resistance(z, slope)[0])
+            self._straight = Straight.build(self.system, board.num, slope, seen_resistance(z, slope)[0])
 
     def _linear_for(self, count: int) -> Linear:
         return self._straight if self._straight is not None and count >= _STRAIGHT_MEMBERS else self.linear
