@@ -7,6 +7,7 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from netaudit.circuit.circuit import Board
+from netaudit.failure import InputError
 from netaudit.finding import Finding
 
 if TYPE_CHECKING:
@@ -34,6 +35,11 @@ class LoadedBoard:
 
         return cls(load_text(text, name, changes))
 
+    @property
+    def modes(self) -> tuple[str, ...]:
+        """The names of the modes."""
+        return tuple(c.mode for c in self.board.circuits)
+
     def lint(self) -> tuple[Finding, ...]:
         """Structural findings, without solving."""
         from netaudit.audit.lint import lint
@@ -42,12 +48,21 @@ class LoadedBoard:
 
     def solve(self, modes: Sequence[str] = ()) -> tuple[ModeResult, ...]:
         """The operating points of every mode (or of those named) at nominal values."""
+        self._known(modes)
         from netaudit.solve.operate import operate
 
         return tuple(operate(c) for c in self.board.circuits if not modes or c.mode in modes)
 
     def audit(self, policy: str | Policy = "none", nominal: bool = False, modes: Sequence[str] = ()) -> Audit:
-        """Every check at its worst corner (at nominal values only with ``nominal``)."""
+        """Every check at its worst corner (at nominal values only with ``nominal``) in every mode or those named."""
+        self._known(modes)
         from netaudit.audit.audit import audit
 
         return audit(self.board, policy, nominal, modes)
+
+    def _known(self, modes: Sequence[str]) -> None:
+        for mode in modes:
+            if mode not in self.modes:
+                raise InputError(
+                    f"{self.board.name}: there is no mode {mode!r}", mend=f"it has {', '.join(self.modes)}"
+                )

@@ -85,7 +85,7 @@ def stress_of(item: Watched, extremes: Sequence[Extreme], nominal: Solved, mode:
         ratio = at_worst / limit if limit > 0 else None
         found = item.limit.row
         row, document = (str(found), found.document) if found is not None else ("", "")
-        symbol = next(iter(item.limit.symbols), item.check.symbols[0])
+        symbol = next(iter((*item.limit.symbols, *item.check.symbols)), "")
     rated = item.device.ratings.get(symbol)
     way = item.direction
     return Stress(

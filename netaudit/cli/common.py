@@ -45,16 +45,6 @@ def add_fail_on(command: argparse.ArgumentParser) -> None:
     command.add_argument("--notes", action="store_true", help="show every note in full")
 
 
-def load(options: argparse.Namespace, path: str) -> LoadedBoard:
-    """The board of one file with the command line's settings; unknown modes are refused."""
-    board = LoadedBoard.from_file(path, options.root, options.changes)
-    known = [c.mode for c in board.board.circuits]
-    for mode in getattr(options, "modes", ()):
-        if mode not in known:
-            raise InputError(f"{path}: there is no mode {mode!r}", mend=f"it has {', '.join(known)}")
-    return board
-
-
 def each(
     options: argparse.Namespace, kind: str, work: Callable[[LoadedBoard, Style], tuple[int, dict[str, Any] | None, str]]
 ) -> int:
@@ -69,7 +59,7 @@ def each(
     status = 0
     for path in options.files:
         try:
-            result, record, text = work(load(options, path), style)
+            result, record, text = work(LoadedBoard.from_file(path, options.root, options.changes), style)
         except InputError as error:
             if not several:
                 raise

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import os
+import re
 import shutil
 import textwrap
 import unicodedata
@@ -11,6 +12,9 @@ from dataclasses import dataclass
 
 from netaudit.failure import printable
 
+#: the last column of a table is not cut below this
+_LEAST = 16
+_COLOUR = re.compile("\x1b\\[[0-9;]*m")
 _CODES = {"error": "1;31", "warning": "33", "note": "36"}
 
 
@@ -47,16 +51,32 @@ def wrapped(text: str, width: int, indent: str) -> list[str]:
 
 
 def columns_of(text: str) -> int:
-    """Terminal columns of a text (East Asian wide characters take two)."""
-    return sum(2 if unicodedata.east_asian_width(c) in "WF" else 1 for c in text)
+    """Terminal columns of a text (East Asian wide characters take two, colour takes none)."""
+    return sum(2 if unicodedata.east_asian_width(c) in "WF" else 1 for c in _COLOUR.sub("", text))
+
+
+def flow(pieces: Sequence[str], width: int) -> list[str]:
+    """Pieces on one line as long as they fit, the rest below, indented."""
+    lines = [pieces[0]]
+    for piece in pieces[1:]:
+        if columns_of(lines[-1]) + 2 + columns_of(piece) <= width:
+            lines[-1] += f"  {piece}"
+        else:
+            lines.append(f"  {piece}")
+    return lines
 
 
 def table(rows: Sequence[Sequence[str]], style: Style) -> list[str]:
-    """Rows as aligned columns, the first row as heading; the last column gives way in a narrow terminal."""
+    """Rows as aligned columns, the first row as heading; the last column is cut where it does not fit.
+
+    In a terminal too narrow for that every row becomes a small paragraph.
+    """
     clean = [[printable(c) for c in row] for row in rows]
     widths = [max(columns_of(row[k]) for row in clean) for k in range(len(clean[0]))]
     room = style.width - sum(widths[:-1]) - 2 * (len(widths) - 1)
-    widths[-1] = max(8, min(widths[-1], room))
+    if room < min(widths[-1], _LEAST):
+        return [line for row in clean[1:] for line in _paragraph(clean[0], row, style)]
+    widths[-1] = min(widths[-1], room)
     out = []
     for number, row in enumerate(clean):
         cells = [c + " " * (w - columns_of(c)) for c, w in zip(row, widths, strict=True)]
@@ -64,3 +84,9 @@ def table(rows: Sequence[Sequence[str]], style: Style) -> list[str]:
         line = "  ".join([*cells[:-1], last]).rstrip()
         out.append(style.faint(line) if number == 0 else line)
     return out
+
+
+def _paragraph(heading: Sequence[str], row: Sequence[str], style: Style) -> list[str]:
+    """``R1  power`` and below it the other cells with their headings."""
+    rest = ", ".join(f"{h} {c}" for h, c in zip(heading[2:], row[2:], strict=True))
+    return [*flow(row[:2], style.width), *(wrapped(rest, style.width, "    ") if rest else [])]

@@ -10,7 +10,7 @@ from netaudit.failure import printable
 from netaudit.finding import Finding
 from netaudit.quantities.write import engineering
 from netaudit.report.json_text import CAUTIONS
-from netaudit.report.style import Style, table, wrapped
+from netaudit.report.style import Style, flow, table, wrapped
 from netaudit.solve.point import ModeResult, Point
 
 _SHOWN_STRESSES = 25
@@ -25,8 +25,8 @@ def findings_text(findings: Sequence[Finding], style: Style, notes: bool) -> Ite
         f = group[0]
         where = f"{f.file}:{f.line}" if f.file and f.line else (f.file or "")
         modes = list(dict.fromkeys(g.mode for g in group if g.mode))
-        shown = f" [{printable(', '.join(modes))}]" if modes and modes != ["normal"] else ""
-        yield f"{style.level(f.level)} {f.rule}{shown}  {style.faint(printable(where))}"
+        shown = [f"[{printable(', '.join(modes))}]"] if modes and modes != ["normal"] else []
+        yield from flow([f"{style.level(f.level)} {f.rule}", *shown, style.faint(printable(where))], style.width)
         yield from wrapped(f.message, style.width, "    ")
     quiet = [f for f in findings if f.level == "note" and not notes]
     for group in _grouped(quiet, lambda f: (f.rule,)):
@@ -56,15 +56,16 @@ def _grouped(findings: Iterable[Finding], key: Callable[[Finding], tuple[object,
 
 def lint_text(board: Board, findings: Sequence[Finding], failed: bool, style: Style, notes: bool) -> str:
     """The report of ``lint``."""
-    lines = [_headline(board, failed, style, "lint"), ""]
+    lines = [*_headline(board, failed, style, "lint"), ""]
     lines += findings_text(findings, style, notes)
-    lines += [_counted(findings), "", "Structure only: nothing was solved, no rating was looked at."]
+    said = "Structure only: nothing was solved, no rating was looked at."
+    lines += [_counted(findings), "", *wrapped(said, style.width, "")]
     return "\n".join(lines) + "\n"
 
 
 def audit_text(audit: Audit, failed: bool, style: Style, notes: bool, version: str) -> str:
     """The report of ``audit``: verdict, coverage, findings worst first, stresses, how sure it is, cautions."""
-    lines = [_headline(audit.board, failed, style, "audit"), *_coverage(audit, style), ""]
+    lines = [*_headline(audit.board, failed, style, "audit"), *_coverage(audit, style), ""]
     lines += findings_text(audit.findings, style, notes)
     lines += ["", *_stresses(audit, style), ""]
     lines += [c for text in _remarks(audit) for c in wrapped(text, style.width, "")]
@@ -86,9 +87,9 @@ def _remarks(audit: Audit) -> Iterable[str]:
     yield from audit.board.cautions
 
 
-def _headline(board: Board, failed: bool, style: Style, what: str) -> str:
-    title = f"  {board.title}" if board.title else ""
-    return f"{style.verdict(failed)}  {printable(f'{what} of {board.name}{title}')}"
+def _headline(board: Board, failed: bool, style: Style, what: str) -> list[str]:
+    title = [printable(board.title)] if board.title else []
+    return flow([style.verdict(failed), printable(f"{what} of {board.name}"), *title], style.width)
 
 
 def _counted(findings: Sequence[Finding]) -> str:
@@ -159,11 +160,12 @@ def _uniqueness(result: ModeResult) -> str:
 
 
 def solve_text(board: Board, results: Sequence[ModeResult], style: Style, version: str) -> str:
-    lines = [f"operating points of {board.name}{'  ' + board.title if board.title else ''}"]
+    title = [printable(board.title)] if board.title else []
+    lines = flow([printable(f"operating points of {board.name}"), *title], style.width)
     for result in results:
         lines += ["", *wrapped(_uniqueness(result), style.width, "")]
         if result.failure:
-            lines += wrapped(f"{style.level('error')} {result.failure}", style.width, "")
+            lines += wrapped(f"error: {result.failure}", style.width, "")
         for number, point in enumerate(result.points, start=1):
             lines += _point(result, point, number, style)
     lines += ["", *(c for caution in CAUTIONS for c in wrapped(caution, style.width, "")), f"netaudit {version}"]
@@ -173,11 +175,11 @@ def solve_text(board: Board, results: Sequence[ModeResult], style: Style, versio
 def _point(result: ModeResult, point: Point, number: int, style: Style) -> list[str]:
     stable = {True: "stable", False: "unstable", None: "stability undecided"}[point.stable]
     head = f"point {number}" if len(result.points) > 1 else "point"
-    lines = [
-        "",
+    said = (
         f"{head}: {stable}; {point.method}, {point.iterations} steps; largest unbalanced current "
-        f"{engineering(point.residual_current, 'A')}",
-    ]
+        f"{engineering(point.residual_current, 'A')}"
+    )
+    lines = ["", *wrapped(said, style.width, "")]
     lines += table([["net", "voltage"], *([net, engineering(v, "V", 4)] for net, v in point.nets.items())], style)
     rows = [["part", "kind", "current into pins", "power", "temperature"]]
     for device in result.circuit.devices:

@@ -33,8 +33,6 @@ def one(audit: Audit, rule: str, mode: str | None = None) -> Finding:
 def stress(audit: Audit, device: str, quantity: str, mode: str = "normal", variant: str | None = None) -> Stress:
     """The only stress of a device and quantity in a mode."""
     (found,) = [
-        s
-        for s in audit.stresses
-        if (s.device, s.quantity, s.mode, s.variant) == (device, quantity, mode, variant)
+        s for s in audit.stresses if (s.device, s.quantity, s.mode, s.variant) == (device, quantity, mode, variant)
     ]
     return found

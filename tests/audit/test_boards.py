@@ -14,7 +14,7 @@ CLEAN = {
     "R2 resistor 1k P_tot=250mW 1:Z 2:GND\n",
     # the zener is without power in one mode: off, not starved
     "zener without power": f"PS1 supply 12V +:V -:GND\nS1 switch closed I_max=1A 1:V 2:W\n"
-    f"R1 resistor 330R P_tot=500mW 1:W 2:Z\nZ1 {ZENER} K:Z A:GND\nmode \"off\"\n  set S1 open\nend\n",
+    f'R1 resistor 330R P_tot=500mW 1:W 2:Z\nZ1 {ZENER} K:Z A:GND\nmode "off"\n  set S1 open\nend\n',
     # a clamp above the rail carries nothing
     "clamp": f"PS1 supply 3.3V +:V -:GND\nR1 resistor 1k P_tot=250mW 1:V 2:Z\nZ1 {ZENER} use=clamp K:Z A:GND\n"
     "R2 resistor 1k P_tot=250mW 1:Z 2:GND\n",
@@ -69,7 +69,7 @@ WRONG = {
     # normal 21 mA; with S1 open (12 - 5) / 22k = 0.3 mA below the knee of 1 mA
     "zener starved in a mode": (
         f"PS1 supply 12V +:V -:GND\nR1 resistor 330R P_tot=500mW 1:V 2:Y\nS1 switch closed I_max=1A 1:Y 2:Z\n"
-        f"R2 resistor 22k P_tot=250mW 1:V 2:Z\nZ1 {ZENER} K:Z A:GND\nmode \"low\"\n  set S1 open\nend\n",
+        f'R2 resistor 22k P_tot=250mW 1:V 2:Z\nZ1 {ZENER} K:Z A:GND\nmode "low"\n  set S1 open\nend\n',
         {("point/zener-starved", "Z1", "warning")},
     ),
     # it carries 0.3 mA in every mode: no clamp
@@ -92,7 +92,7 @@ WRONG = {
     # the rail of a supply that is off is fed to 11 V through 1k
     "off supply fed": (
         "PS1 supply 12V +:V -:GND\nPS2 supply 5V +:W -:GND\nR1 resistor 1k P_tot=500mW 1:V 2:W\n"
-        "R2 resistor 100R P_tot=500mW 1:W 2:GND\nmode \"alone\"\n  set PS2 off\nend\n",
+        'R2 resistor 100R P_tot=500mW 1:W 2:GND\nmode "alone"\n  set PS2 off\nend\n',
         {("point/back-feed", "PS2", "error")},
     ),
     # 1.2 A wanted of 0.1 A
@@ -122,7 +122,7 @@ WRONG = {
     # 5 V on a gate whose R_DS_on is stated at 10 V
     "weak gate drive": (
         f"PS1 supply 12V +:V -:GND\nPS2 supply 5V +:W -:GND\nR1 resistor 100R P_tot=2W 1:V 2:D\n"
-        f"R2 resistor 10k P_tot=250mW 1:W 2:G\nM1 {NMOS} R_DS_on=\"50mohm @ 10V\" G:G D:D S:GND\n",
+        f'R2 resistor 10k P_tot=250mW 1:W 2:G\nM1 {NMOS} R_DS_on="50mohm @ 10V" G:G D:D S:GND\n',
         {("point/weak-drive", "M1", "warning")},
     ),
     # 30 V on a gate that takes 20 V
@@ -146,7 +146,7 @@ WRONG = {
     "relay state": (
         "PS1 supply 12V +:V -:GND\nK1 relay off R=500ohm I_max=2A C1:V C2:GND COM:V NO:L NC:nc\n"
         "R1 resistor 1k P_tot=250mW 1:L 2:GND\n",
-        {("point/coil-state", "K1", "warning"), ("graph/unreferenced-net", "L", "error")},
+        {("point/coil-state", "K1", "warning")},
     ),
     # -11.9 V on a polarised capacitor
     "capacitor reversed": (
@@ -171,7 +171,7 @@ WRONG = {
 @pytest.mark.parametrize("name", CLEAN)
 def test_clean_board_is_silent(name: str) -> None:
     audit = audited(CLEAN[name])
-    assert loud(audit) - {("graph/unreferenced-net", "nothing", "error")} == set()
+    assert loud(audit) == set()
     assert not audit.fails()
 
 
