@@ -66,8 +66,8 @@ def draw(spans: Sequence[Variable], plan: Plan) -> Array:
     high = np.array([v.quantity.high for v in spans])
     if plan.distribution == "uniform":
         return np.asarray(low + unit * (high - low))
-    ends = norm.cdf([-_SIGMAS, _SIGMAS])
-    z = norm.ppf(ends[0] + unit * (ends[1] - ends[0])) / _SIGMAS
+    tail = float(norm.cdf(-_SIGMAS))
+    z = np.asarray(norm.ppf(tail + unit * (1.0 - 2.0 * tail))) / _SIGMAS
     middle = np.array([v.quantity.nominal for v in spans])
     return np.asarray(np.where(z < 0, middle + z * (middle - low), middle + z * (high - middle)))
 

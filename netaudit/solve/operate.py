@@ -12,7 +12,7 @@ from netaudit.solve.runaway import follow
 from netaudit.solve.settle import Settled, Solver
 from netaudit.solve.solved import Solved
 from netaudit.solve.stability import Stability, stability
-from netaudit.solve.structure import unique_by_structure
+from netaudit.solve.structure import ALONE, isolated, structure
 from netaudit.solve.system import System
 
 #: unknowns up to which stability is looked at
@@ -44,7 +44,8 @@ class Operation:
         """Solves the mode (once; asking again solves again)."""
         followed = follow(self.solver, self.solver.job())
         settled = followed.settled
-        proven, because = unique_by_structure(self.system)
+        known = structure(self.system)
+        proven, because = known.unique, known.because
         if not settled.converged[0]:
             return self._nothing(settled, because)
         certificate = certify(settled.solved.pick(0))
@@ -55,6 +56,8 @@ class Operation:
             )
             return ModeResult(self.circuit, (), "searched", because, failure, certificate.worst_net)
         every = [settled]
+        if known.monotone and not proven and isolated(settled.solved):
+            proven, because = True, ALONE
         if not proven and not followed.runaway:
             further = further_points(self.solver, settled)
             every = [settled, *further.settled]

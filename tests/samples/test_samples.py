@@ -35,7 +35,7 @@ def test_currents_balance_on_every_net_and_powers_over_the_board(path: Path) -> 
             separate = [n for n in nets if n not in result.circuit.grounds]
             assert max(abs(nets[n]) for n in separate) < 1e-9
             assert abs(sum(nets[n] for n in result.circuit.grounds)) < 1e-9
-            assert abs(total) <= 1e-9 * turned
+            assert abs(total) <= 1e-9 * turned + 1e-15
 
 
 def rules(name: str) -> set[tuple[str, str | None]]:
@@ -61,12 +61,12 @@ def test_its_corrected_twin_is_clean() -> None:
 @pytest.mark.parametrize(
     ("sample", "change", "rule"),
     [
-        ("power_entry.netlist", "PS1=-12V", "stress/reverse-voltage"),
+        ("power_entry.netlist", "PS1=19V", "stress/stand-off-voltage"),
         ("zener_reference.netlist", "R1=8k2", "point/zener-starved"),
         ("led_panel.netlist", "R1=150R", "stress/forward-current"),
         ("flyback.netlist", "L1=I_max=30mA", "stress/current"),
         ("sensor_bridge.netlist", "PS1=24V", "stress/power"),
-        ("relay_driver.netlist", "R1=47k", "point/weak-drive"),
+        ("relay_driver.netlist", "R1=8k2", "point/weak-drive"),
         ("load_switch.netlist", "R1=100k", "point/weak-drive"),
         ("led_output.netlist", "R1=22R", "stress/current"),
         ("opto_input.netlist", "R1=330R", "stress/forward-current"),
