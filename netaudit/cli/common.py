@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import argparse
 import contextlib
+import io
 import os
 import sys
 from collections.abc import Callable
@@ -81,7 +82,7 @@ def each(
 def deliver(text: str, path: str | None) -> None:
     """Writes a report to stdout, or whole to a file: a reader of that file never sees half of it."""
     if path is None:
-        sys.stdout.write(text)
+        _to_stdout(text)
         return
     temporary = f"{path}.{os.getpid()}.part"
     try:
@@ -92,6 +93,25 @@ def deliver(text: str, path: str | None) -> None:
         with contextlib.suppress(OSError):
             os.unlink(temporary)
         raise InputError(f"{path} cannot be written: {error.strerror}", mend="choose another -o") from None
+
+
+def _to_stdout(text: str) -> None:
+    if isinstance(sys.stdout, io.TextIOWrapper):
+        # a terminal of another encoding gets an escape, never a crash
+        sys.stdout.reconfigure(errors="backslashreplace")
+    try:
+        sys.stdout.write(text)
+        sys.stdout.flush()
+    except BrokenPipeError:
+        raise
+    except OSError as error:
+        abandon_stdout()
+        raise InputError(f"the report cannot be written to stdout: {error.strerror}") from None
+
+
+def abandon_stdout() -> None:
+    """Lets what is still in the buffer go nowhere, so that the interpreter does not complain at exit."""
+    os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
 
 
 def refuse(error: InputError) -> int:

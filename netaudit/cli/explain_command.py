@@ -3,10 +3,10 @@
 from __future__ import annotations
 
 import argparse
-import sys
 from typing import Any
 
 from netaudit import explain
+from netaudit.cli.common import deliver
 
 
 def add(commands: Any) -> None:
@@ -21,5 +21,5 @@ def add(commands: Any) -> None:
 
 
 def run(options: argparse.Namespace) -> int:
-    sys.stdout.write(explain(options.name))
+    deliver(explain(options.name), None)
     return 0

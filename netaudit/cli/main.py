@@ -6,14 +6,20 @@
 from __future__ import annotations
 
 import argparse
-import os
 import sys
 import traceback
 from collections.abc import Sequence
 
 from netaudit import __version__
-from netaudit.cli import audit_command, explain_command, lint_command, solve_command
-from netaudit.cli.common import refuse
+from netaudit.cli import (
+    audit_command,
+    convert_command,
+    explain_command,
+    fit_command,
+    lint_command,
+    solve_command,
+)
+from netaudit.cli.common import abandon_stdout, refuse
 from netaudit.failure import InputError
 
 _EPILOG = """\
@@ -47,7 +53,7 @@ def parser() -> argparse.ArgumentParser:
     )
     top.add_argument("--version", action="version", version=f"netaudit {__version__}")
     commands = top.add_subparsers(dest="command", metavar="COMMAND", required=True)
-    for module in (lint_command, solve_command, audit_command, explain_command):
+    for module in (lint_command, solve_command, audit_command, explain_command, fit_command, convert_command):
         module.add(commands)
     return top
 
@@ -65,8 +71,8 @@ def main(arguments: Sequence[str] | None = None) -> int:
         print("netaudit: interrupted", file=sys.stderr)
         return 130
     except BrokenPipeError:
-        # whoever read the output has seen enough; keep the interpreter from complaining at exit
-        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+        # whoever read the output has seen enough
+        abandon_stdout()
         return 0
     except SystemExit as done:
         return int(done.code or 0)

@@ -14,8 +14,8 @@ from netaudit.solve.point import ModeResult, Point
 
 
 def dumps(value: Any) -> str:
-    """Strict JSON text; numbers that are not finite become null."""
-    return json.dumps(_clean(value), ensure_ascii=False, allow_nan=False, indent=1)
+    """Strict JSON text in ASCII, so that no terminal's encoding matters; numbers that are not finite become null."""
+    return json.dumps(_clean(value), allow_nan=False, indent=1)
 
 
 def _clean(value: Any) -> Any:

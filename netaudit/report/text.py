@@ -65,7 +65,7 @@ def lint_text(board: Board, findings: Sequence[Finding], failed: bool, style: St
 
 def audit_text(audit: Audit, failed: bool, style: Style, notes: bool, version: str) -> str:
     """The report of ``audit``: verdict, coverage, findings worst first, stresses, how sure it is, cautions."""
-    lines = [*_headline(audit.board, failed, style, "audit"), *_coverage(audit, style), ""]
+    lines = [*_headline(audit.board, failed, style, "audit", audit.complete), *_coverage(audit, style), ""]
     lines += findings_text(audit.findings, style, notes)
     lines += ["", *_stresses(audit, style), ""]
     lines += [c for text in _remarks(audit) for c in wrapped(text, style.width, "")]
@@ -87,9 +87,10 @@ def _remarks(audit: Audit) -> Iterable[str]:
     yield from audit.board.cautions
 
 
-def _headline(board: Board, failed: bool, style: Style, what: str) -> list[str]:
+def _headline(board: Board, failed: bool, style: Style, what: str, complete: bool = True) -> list[str]:
+    said = printable(f"{what} of {board.name}") + ("" if complete else ", not complete")
     title = [printable(board.title)] if board.title else []
-    return flow([style.verdict(failed), printable(f"{what} of {board.name}"), *title], style.width)
+    return flow([style.verdict(failed), said, *title], style.width)
 
 
 def _counted(findings: Sequence[Finding]) -> str:

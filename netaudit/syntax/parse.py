@@ -35,7 +35,7 @@ from netaudit.syntax.statements import (
 
 _NAME = re.compile(r"^[A-Za-z0-9_+\-./~]+$")
 _SPLIT = re.compile(r'("(?:\\["\\]|[^"\\])*"|[^":=]+)([:=]|$)')
-_RESERVED = frozenset(
+RESERVED = frozenset(
     [
         "netlist",
         "title",
@@ -125,7 +125,7 @@ def _checked(word: Word, what: str, reserved: bool = False) -> Word:
         raise InputError(
             f"{word.text!r} needs quotes as a {what}", place=word.place, mend=f'write "{word.text}" in double quotes'
         )
-    if reserved and word.text in _RESERVED:
+    if reserved and word.text in RESERVED:
         raise InputError(
             f"{word.text} is a statement's word", place=word.place, mend=f'as a {what} it needs quotes: "{word.text}"'
         )
