@@ -88,9 +88,9 @@ def _remarks(audit: Audit) -> Iterable[str]:
 
 
 def _headline(board: Board, failed: bool, style: Style, what: str, complete: bool = True) -> list[str]:
-    said = printable(f"{what} of {board.name}") + ("" if complete else ", not complete")
+    gaps = [] if complete else ["(not complete)"]
     title = [printable(board.title)] if board.title else []
-    return flow([style.verdict(failed), said, *title], style.width)
+    return flow([style.verdict(failed), printable(f"{what} of {board.name}"), *gaps, *title], style.width)
 
 
 def _counted(findings: Sequence[Finding]) -> str:

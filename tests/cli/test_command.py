@@ -226,6 +226,29 @@ def test_broken_pipe_is_quiet(folder: Path) -> None:
     assert done.returncode == 0
 
 
+def test_terminal_of_another_encoding_gets_escapes(folder: Path) -> None:
+    (folder / "title.netlist").write_text(CLEAN.replace("divider", "Gewächshaus 電圧"), encoding="utf-8")
+    for arguments in (["title.netlist"], ["--format", "json", "title.netlist"]):
+        done = subprocess.run(
+            [sys.executable, "-m", "netaudit", "audit", *arguments],
+            capture_output=True, cwd=folder, env={**os.environ, "PYTHONIOENCODING": "latin-1"}, check=False,
+        )  # fmt: skip
+        assert (done.returncode, done.stderr) == (0, b"")
+    assert json.loads(done.stdout.decode("latin-1"))["verdict"] == "pass"
+
+
+@pytest.mark.skipif(not Path("/dev/full").exists(), reason="needs a device that is always full")
+def test_full_disk_is_one_line(folder: Path) -> None:
+    with open("/dev/full", "wb") as full:
+        done = subprocess.run(
+            [sys.executable, "-m", "netaudit", "audit", "clean.netlist"],
+            stdout=full, stderr=subprocess.PIPE, cwd=folder, check=False,
+        )  # fmt: skip
+    assert done.returncode == 2
+    assert len(done.stderr.splitlines()) == 1
+    assert b"cannot be written" in done.stderr
+
+
 def test_lint_starts_without_heavy_libraries(folder: Path) -> None:
     script = (
         "import sys; from netaudit.cli.main import main; status = main(['lint', '--format', 'json', 'clean.netlist']); "

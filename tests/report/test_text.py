@@ -32,7 +32,7 @@ def board() -> netaudit.interface.LoadedBoard:
 def test_audit_says_verdict_coverage_findings_stresses_and_cautions(board: netaudit.interface.LoadedBoard) -> None:
     text = audit_text(board.audit(), True, Style(width=100), False, "1.2.3")
     lines = text.splitlines()
-    assert lines[0] == "FAIL  audit of indicator.netlist  indicator"
+    assert lines[0] == "FAIL  audit of indicator.netlist  (not complete)  indicator"
     flat = " ".join(text.split())
     assert "4 of 5 parts audited" in flat
     assert "NOT AUDITED: U1 (no model)." in flat
