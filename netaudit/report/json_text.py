@@ -131,6 +131,7 @@ def _mode_record(result: ModeResult) -> dict[str, Any]:
         "uniqueness": result.uniqueness,
         "because": result.because,
         "failure": result.failure or None,
+        "thermal_runaway": list(result.runaway),
         "points": [_point_record(result, p) for p in result.points],
     }
 

@@ -167,6 +167,11 @@ def solve_text(board: Board, results: Sequence[ModeResult], style: Style, versio
         lines += ["", *wrapped(_uniqueness(result), style.width, "")]
         if result.failure:
             lines += wrapped(f"error: {result.failure}", style.width, "")
+        if result.runaway:
+            said = (
+                f"error: {', '.join(result.runaway)} runs away thermally: followed from cold, no equilibrium is reached"
+            )
+            lines += wrapped(f"{said}, and the temperatures below are those where it folds", style.width, "")
         for number, point in enumerate(result.points, start=1):
             lines += _point(result, point, number, style)
     lines += ["", *(c for caution in CAUTIONS for c in wrapped(caution, style.width, "")), f"netaudit {version}"]

@@ -107,3 +107,12 @@ def test_solve_shows_nets_and_pins(board: netaudit.interface.LoadedBoard) -> Non
     assert re.search(r"^V +12 V$", text, re.MULTILINE)
     assert re.search(r"^R1 +resistor +1 120 mA +2 -120 mA +1\.44 W +25 degC$", text, re.MULTILINE)
     assert "Mode normal: one operating point" in text
+
+
+def test_solve_says_that_a_part_runs_away() -> None:
+    board = netaudit.loads(
+        "netlist 1\nground GND\nPS1 supply 25V +:V -:GND\nR1 resistor 100R 1:V 2:T\n"
+        "R2 thermistor 10k B=3950K R_th_ja=250K/W 1:T 2:GND\n"
+    )
+    text = " ".join(solve_text(board.board, board.solve(), Style(), "1").split())
+    assert "error: R2 runs away thermally" in text
