@@ -5,7 +5,6 @@ from __future__ import annotations
 from collections.abc import Iterable, Sequence, Set
 
 from netaudit.audit.context import CONDUCTS
-from netaudit.audit.rule import about
 from netaudit.circuit.circuit import Circuit
 from netaudit.circuit.graph import conducting
 from netaudit.devices import KINDS
@@ -47,7 +46,9 @@ def _finding(device: Device, question: str) -> Finding:
         quantity="current",
         limit=CONDUCTS,
         unit="A",
-        **about(device),  # type: ignore[arg-type]  # the mapping's keys are the field names
+        device=device.name,
+        file=device.place.file,
+        line=device.place.line,
     )
 
 

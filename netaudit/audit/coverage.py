@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable, Sequence
 
 from netaudit.audit.records import Coverage
-from netaudit.audit.rule import about, listed
+from netaudit.audit.rule import listed
 from netaudit.audit.stress import Watched
 from netaudit.circuit.circuit import Board
 from netaudit.devices.base import Device
@@ -70,7 +70,9 @@ def rating_notes(items: Sequence[Watched]) -> Iterable[Finding]:
             "part/no-rating",
             "note",
             f"{device.name}: not checked for lack of a rating: {said}{tail}",
-            **about(device),  # type: ignore[arg-type]
+            device=device.name,
+            file=device.place.file,
+            line=device.place.line,
         )
 
 

@@ -9,6 +9,7 @@ import argparse
 import sys
 import traceback
 from collections.abc import Sequence
+from typing import NoReturn
 
 from netaudit import __version__
 from netaudit.cli import (
@@ -38,7 +39,7 @@ exit status: 0 nothing at or above --fail-on, 1 something is, 2 the command, a f
 class _Parser(argparse.ArgumentParser):
     """Wrong arguments are one line and exit status 2, like every other wrong input."""
 
-    def error(self, message: str) -> None:  # type: ignore[override]  # argparse says NoReturn; raising does not return
+    def error(self, message: str) -> NoReturn:
         raise InputError(f"netaudit: {message}", mend=f"{self.prog} --help")
 
 
