@@ -94,7 +94,11 @@ def sample(
 
 
 def _solve(
-    solver: Solver, nominal: Solved, spans: Sequence[Variable], values: Array, ratios: Sequence[Callable[[Solved], Array]]
+    solver: Solver,
+    nominal: Solved,
+    spans: Sequence[Variable],
+    values: Array,
+    ratios: Sequence[Callable[[Solved], Array]],
 ) -> Array:
     count = len(values)
     overrides, air = assign(spans, values, solver.system.circuit.ambient.nominal)

@@ -66,9 +66,7 @@ def _hottest(operation: Operation, explorer: Explorer) -> tuple[Followed, dict[s
     if explorer.failures:
         row = np.array([explorer.failures[0][v.key] for v in explorer.spans])
     else:
-        hottest = [
-            float(np.max(explorer.boards[b].temperature[m][solver.heat.devices])) for b, m in explorer.member
-        ]
+        hottest = [float(np.max(explorer.boards[b].temperature[m][solver.heat.devices])) for b, m in explorer.member]
         row = explorer.rows[int(np.argmax(hottest))]
     overrides, air = assign(explorer.spans, row[None, :], solver.system.circuit.ambient.nominal)
     ambient = np.broadcast_to(np.asarray(air, dtype=float), (1,))

@@ -77,15 +77,13 @@ class Explorer:
         best = np.nanargmax(table, axis=0)
         best = self._inside(objectives, best)
         table = self._table(objectives)
-        gradients = self._gradients(objectives, sorted(set(best.tolist())))
-        return [self._extreme(table, int(best[k]), k, gradients) for k in range(len(objectives))]
+        self._gradients(objectives, sorted(set(best.tolist())))
+        return [self._extreme(table, int(best[k]), k) for k in range(len(objectives))]
 
-    def _extreme(self, table: Array, row: int, k: int, gradients: dict[int, Array]) -> Extreme:
-        corner = {
-            v.key: float(self.rows[row][c])
-            for c, v in enumerate(self.spans)
-            if self.rows[row][c] != self.middle[c] or gradients[row][k, c] != 0.0
-        }
+    def _extreme(self, table: Array, row: int, k: int) -> Extreme:
+        """The extreme with its corner: the values that have an influence on this quantity somewhere looked at."""
+        matters = np.any([slopes[k] != 0.0 for slopes in self._slopes.values()], axis=0)
+        corner = {v.key: float(self.rows[row][c]) for c, v in enumerate(self.spans) if matters[c]}
         return Extreme(float(table[row, k]), self._board(row), corner, "checked")
 
     def _climb(self, objectives: Sequence[Objective]) -> None:
@@ -109,7 +107,9 @@ class Explorer:
         best = best.copy()
         for _ in range(3):
             gradients = self._gradients(objectives, sorted(set(best.tolist())))
-            todo = [(k, c) for k in range(len(objectives)) for c in self._inward(gradients[int(best[k])][k], int(best[k]))]
+            todo = [
+                (k, c) for k in range(len(objectives)) for c in self._inward(gradients[int(best[k])][k], int(best[k]))
+            ]
             if not todo:
                 return best
             before = self._table(objectives)[best, np.arange(len(objectives))]
@@ -129,8 +129,8 @@ class Explorer:
     def _zoom(self, objectives: Sequence[Objective], best: np.ndarray, ks: Sequence[int], column: int) -> None:
         """Successively finer grids along one value for several objectives, then the top of the parabola through the
         best three; updates ``best`` where something is larger."""
-        left = {k: self.low[column] for k in ks}
-        right = {k: self.high[column] for k in ks}
+        left = dict.fromkeys(ks, self.low[column])
+        right = dict.fromkeys(ks, self.high[column])
         for _ in range(_ZOOM):
             self._try(objectives, best, {k: np.linspace(left[k], right[k], 9) for k in ks}, column)
             for k in ks:

@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+import gc
+from collections.abc import Iterator, Sequence
+from contextlib import contextmanager
 from dataclasses import replace
 
 from netaudit.circuit.circuit import Board
@@ -20,7 +22,20 @@ def load_board(path: str, root: str | None = None, changes: Sequence[str] = ()) 
 
     ``changes`` are settings such as ``R1=1k`` or ``S1=open`` that hold in every mode, after the modes' own.
     """
-    return elaborate(with_changes(read_netlist(path, root=root), changes))
+    with uncollected():
+        return elaborate(with_changes(read_netlist(path, root=root), changes))
+
+
+@contextmanager
+def uncollected() -> Iterator[None]:
+    """Pauses the collector: reading makes many small objects and no cycles, which it would only walk again and again."""
+    running = gc.isenabled()
+    gc.disable()
+    try:
+        yield
+    finally:
+        if running:
+            gc.enable()
 
 
 def load_text(text: str, name: str = "netlist", changes: Sequence[str] = ()) -> Board:

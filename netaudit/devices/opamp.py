@@ -29,7 +29,7 @@ class OpAmp(Kind):
 
     def stamp(self, device: Device, values: Values, a: Assembly) -> None:
         p, n, o, top, bottom = (a.pin(pin) for pin in ("IN+", "IN-", "OUT", "V+", "V-"))
-        x, y, z, j = a.unknown("x"), a.unknown("y"), a.unknown("z"), a.unknown("j")
+        x, y, z, j, w = (a.unknown(name) for name in "xyzjw")
         gain, swing = np.asarray(values["gain"]), np.asarray(values["swing"])
         # x = (V+ + V-)/2 + gain (v_IN+ - v_IN- + V_OS), scaled by the gain so that the row has the size of the input
         a.add(x, x, 1.0 / gain)
@@ -38,14 +38,18 @@ class OpAmp(Kind):
         a.add(x, p, -1.0)
         a.add(x, n, 1.0)
         a.source(x, values["V_OS"])
-        # y = min(x, V+ - swing)
+        # w = min(swing, half the supply): without supply the output lies between its rails, not beyond them
+        a.add(w, w, 1.0)
+        a.source(w, swing)
+        a.branch(RAMP, [(w, 1.0)], [(top, -0.5), (bottom, 0.5)], offset=-swing)
+        # y = min(x, V+ - w)
         a.add(y, y, 1.0)
         a.add(y, x, -1.0)
-        a.branch(RAMP, [(y, 1.0)], [(x, 1.0), (top, -1.0)], offset=-swing)
-        # z = max(y, V- + swing)
+        a.branch(RAMP, [(y, 1.0)], [(x, 1.0), (top, -1.0), (w, 1.0)], offset=0.0)
+        # z = max(y, V- + w)
         a.add(z, z, 1.0)
         a.add(z, y, -1.0)
-        a.branch(RAMP, [(z, -1.0)], [(bottom, 1.0), (y, -1.0)], offset=-swing)
+        a.branch(RAMP, [(z, -1.0)], [(bottom, 1.0), (w, 1.0), (y, -1.0)], offset=0.0)
         limit = np.asarray(values["limit"]) if values.has("limit") else None
         rho = 1.0 / device.nominal("limit", 1.0)
         bounded_output(a, j, [(z, 1.0)], [(o, 1.0)], None if limit is None else -limit, limit, rho)

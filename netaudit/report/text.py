@@ -128,11 +128,11 @@ def _stresses(audit: Audit, style: Style) -> list[str]:
 
 
 def _worst_modes(stresses: Sequence[Stress]) -> list[Stress]:
-    """Of each part and quantity the worst mode; what has a limit of 0 and is not stressed at all is left out."""
+    """Of each part and quantity the worst mode and variant; what has a limit of 0 and is not stressed is left out."""
     first: dict[tuple[object, ...], Stress] = {}
     for s in stresses:
         if s.limit is not None and (s.ratio is not None or s.worst > 0):
-            first.setdefault((s.device, s.quantity, s.pin, s.variant), s)
+            first.setdefault((s.device, s.quantity, s.pin), s)
     return list(first.values())
 
 

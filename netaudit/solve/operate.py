@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
+
 import numpy as np
 
 from netaudit.circuit.circuit import Circuit
@@ -64,6 +66,10 @@ class Operation:
             because += further.said
         self.boards = [one.solved for one in every]
         points = tuple(self._point(one, proven) for one in every)
+        if followed.runaway:
+            said = "it runs away thermally: shown is the last point before the fold, which is no equilibrium of the whole board"
+            points = tuple(replace(p, stable=None, stable_because=said) for p in points)
+            proven = False
         uniqueness: Uniqueness = "proven" if proven else "searched"
         return ModeResult(self.circuit, points, uniqueness, because, runaway=followed.runaway)
 

@@ -49,7 +49,9 @@ def structure(system: System) -> Structure:
         elif growth == "other":
             other.append(device.name)
     if other:
-        return Structure(False, False, f"{_listed(other)} can act as controlled sources or have falling characteristics")
+        return Structure(
+            False, False, f"{_listed(other)} can act as controlled sources or have falling characteristics"
+        )
     if flat:
         said = f"{_listed(flat)} have a flat or vertical piece, which leaves existence but not uniqueness"
         return Structure(False, True, said)

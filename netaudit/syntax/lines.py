@@ -8,6 +8,9 @@ from dataclasses import dataclass
 from netaudit.failure import InputError
 from netaudit.place import Place
 
+#: characters of one statement, continuation lines included
+LONGEST = 200_000
+
 
 @dataclass(frozen=True, slots=True)
 class Piece:
@@ -29,7 +32,9 @@ class LogicalLine:
 
     def place(self, start: int, end: int | None = None) -> Place:
         """The place of characters start..end of the joined text."""
-        piece = next(p for p in reversed(self.pieces) if p.start <= start or p is self.pieces[0])
+        piece = self.pieces[0]
+        if len(self.pieces) > 1:
+            piece = next(p for p in reversed(self.pieces) if p.start <= start or p is self.pieces[0])
         column = start - piece.start + 1
         stop = None if end is None else min(end - piece.start + 1, len(piece.source) + 1)
         return Place(self.file, piece.line, column, stop, piece.source, self.chain)
@@ -47,6 +52,10 @@ def logical_lines(text: str, file: str, chain: tuple[Place, ...] = ()) -> Iterat
             body = body.rstrip()[:-1] + " "
         pieces.append(Piece(len(joined), number, source))
         joined += body
+        if len(joined) > LONGEST:
+            raise InputError(
+                f"a statement of more than {LONGEST} characters", place=Place(file, number, chain=chain), mend="part it"
+            )
         if more:
             continue
         if joined.strip():

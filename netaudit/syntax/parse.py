@@ -5,7 +5,7 @@ from __future__ import annotations
 import re
 from collections.abc import Callable
 from dataclasses import dataclass
-from functools import cache
+from functools import cache, lru_cache
 from typing import Any
 
 from netaudit.failure import InputError
@@ -75,6 +75,12 @@ def _lark() -> Any:
     return Lark(grammar_text("netlist.lark"), parser="lalr", lexer="contextual", propagate_positions=False)
 
 
+@lru_cache(maxsize=1024)
+def _tree(text: str) -> Any:
+    """The tree of a line; tokens count from the line's start, so that equal lines share one."""
+    return _lark().parse(text).children[0]
+
+
 class Parser:
     """Parses the lines of one file."""
 
@@ -83,7 +89,7 @@ class Parser:
         from lark.exceptions import UnexpectedInput
 
         try:
-            tree = _lark().parse(line.text).children[0]
+            tree = _tree(line.text)
         except UnexpectedInput as error:
             raise explain(line, error, first) from None
         make: Callable[[LogicalLine, list[Any]], Statement | Mark] = _MAKERS[tree.data]

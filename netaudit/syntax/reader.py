@@ -14,6 +14,7 @@ from netaudit.syntax.parse import Mark, Parser
 from netaudit.syntax.paths import below_root, project_root
 from netaudit.syntax.statements import (
     BlockStatement,
+    DeviceStatement,
     ExportStatement,
     ModeStatement,
     Netlist,
@@ -33,6 +34,7 @@ class _Reading:
     statements: list[Statement] = field(default_factory=list)
     files: dict[str, str] = field(default_factory=dict)
     only_modes: bool = False
+    designators: dict[str, Place] = field(default_factory=dict)
 
 
 def read_netlist(path: str, *, root: str | None = None) -> Netlist:
@@ -103,6 +105,14 @@ def _add(found: Statement, line: LogicalLine, reading: _Reading, opened: list[tu
     if opened:
         opened[-1][1].append(found)
         return
+    if isinstance(found, DeviceStatement):
+        first = reading.designators.setdefault(found.designator.text, found.place)
+        if first is not found.place:
+            raise InputError(
+                f"designator {found.designator.text} stands twice (first at {first.file}:{first.line})",
+                place=found.place,
+                mend="rename one of them",
+            )
     if isinstance(found, PartsStatement) and found.file.quoted:
         found = replace(found, path=below_root(found.file.text, found.place, reading.root))
     reading.statements.append(found)

@@ -46,7 +46,9 @@ def test_bounds_contain_samples_of_value_and_slope(family: Family, p: dict[str, 
     assert (s0 <= slope).all() and (slope <= s1).all()  # noqa: PT018
 
 
-@pytest.mark.parametrize(("i_s", "v", "r"), [(1e-12, 0.0257, 0.0), (1e-9, 0.046, 0.5), (1e-6, 0.0257, 1e9), (1e-15, 0.03, 1e-6)])
+@pytest.mark.parametrize(
+    ("i_s", "v", "r"), [(1e-12, 0.0257, 0.0), (1e-9, 0.046, 0.5), (1e-6, 0.0257, 1e9), (1e-15, 0.03, 1e-6)]
+)
 def test_exponential_agrees_with_fifty_digits(i_s: float, v: float, r: float) -> None:
     mp.mp.dps = 50
     for u in (-50.0, -0.3, -1e-6, 1e-9, 0.2, 0.65, 0.9, 5.0):

@@ -46,10 +46,30 @@ EXAMPLES: dict[str, list[str]] = {
     "unmodelled": ["VCC:A GND:B"],
 }
 #: kinds that neither deliver nor control: their heat is never negative
-PASSIVE = (
-    "resistor link trimmer thermistor capacitor inductor fuse switch relay load driver diode led zener suppressor bridge "
-    "npn pnp nmos pmos njfet pjfet"
-).split()
+PASSIVE = [
+    "resistor",
+    "link",
+    "trimmer",
+    "thermistor",
+    "capacitor",
+    "inductor",
+    "fuse",
+    "switch",
+    "relay",
+    "load",
+    "driver",
+    "diode",
+    "led",
+    "zener",
+    "suppressor",
+    "bridge",
+    "npn",
+    "pnp",
+    "nmos",
+    "pmos",
+    "njfet",
+    "pjfet",
+]
 CASES = [(kind, text) for kind, texts in EXAMPLES.items() for text in texts]
 
 

@@ -34,7 +34,9 @@ def closed_form(v: float, r: mp.mpf, i_s: mp.mpf, n: float) -> mp.mpf:
 
 @pytest.mark.parametrize("volts", VOLTS)
 @pytest.mark.parametrize("junction", JUNCTIONS)
-def test_forward_and_reverse_currents_agree_with_the_closed_form(volts: float, junction: tuple[str, float, str]) -> None:
+def test_forward_and_reverse_currents_agree_with_the_closed_form(
+    volts: float, junction: tuple[str, float, str]
+) -> None:
     i_s, n, r_s = junction
     for ohms in OHMS:
         total = number(ohms) + number(r_s)

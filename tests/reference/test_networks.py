@@ -68,7 +68,17 @@ def test_long_ladder_approaches_the_golden_ratio() -> None:
 
 
 # IEC 60751, resistance of a Pt100 by its table (two decimals)
-PT100 = {0: 100.00, 50: 119.40, 100: 138.51, 150: 157.33, 200: 175.86, 300: 212.05, 400: 247.09, 600: 313.71, 850: 390.48}
+PT100 = {
+    0: 100.00,
+    50: 119.40,
+    100: 138.51,
+    150: 157.33,
+    200: 175.86,
+    300: 212.05,
+    400: 247.09,
+    600: 313.71,
+    850: 390.48,
+}
 
 
 @pytest.mark.parametrize(("celsius", "ohms"), PT100.items())
@@ -89,7 +99,7 @@ def test_constants_are_those_of_codata() -> None:
 
     assert constants.k == junction.BOLTZMANN
     assert constants.e == junction.CHARGE
-    assert fit.V_T == pytest.approx(constants.k * 298.15 / constants.e, rel=1e-15)
+    assert pytest.approx(constants.k * 298.15 / constants.e, rel=1e-15) == fit.V_T
 
 
 # (volts, ohms, I_S, n, kelvin, amperes): closed form in 30 digits, computed

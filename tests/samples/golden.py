@@ -1,6 +1,6 @@
 """Golden reports of the sample netlists.  Regenerate them, after looking at the difference, with
 
-    python -m tests.samples.golden
+python -m tests.samples.golden
 """
 
 from __future__ import annotations

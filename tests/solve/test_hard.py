@@ -15,7 +15,9 @@ def solve(text: str) -> ModeResult:
     return netaudit.loads(HEAD + text).solve()[0]
 
 
-def string(volts: float, ohms: float, count: int, saturations: tuple[str, ...], reversed_at: tuple[int, ...] = ()) -> str:
+def string(
+    volts: float, ohms: float, count: int, saturations: tuple[str, ...], reversed_at: tuple[int, ...] = ()
+) -> str:
     lines = [f"PS1 supply {volts}V sinks=yes +:IN -:GND", f"R1 resistor {ohms}ohm 1:IN 2:N0"]
     for k in range(count):
         a, b = f"N{k}", "GND" if k == count - 1 else f"N{k + 1}"

@@ -12,9 +12,7 @@ HEAD = "netlist 1\nground GND\nambient 25degC\n"
 
 def test_resistor_with_a_positive_coefficient_settles_at_its_quadratic() -> None:
     """P = V^2 / (R (1 + a dT)), dT = R_th P: a dT^2 + dT - R_th V^2 / R = 0."""
-    board = netaudit.loads(
-        HEAD + "PS1 supply 10V +:A -:GND\nR1 resistor 100R alpha=0.01 R_th_ja=100K/W 1:A 2:GND\n"
-    )
+    board = netaudit.loads(HEAD + "PS1 supply 10V +:A -:GND\nR1 resistor 100R alpha=0.01 R_th_ja=100K/W 1:A 2:GND\n")
     point = board.solve()[0].points[0]
     rise = (-1 + np.sqrt(1 + 4 * 0.01 * 100 * 100 / 100)) / (2 * 0.01)
     assert point.temperatures["R1"] == pytest.approx(25 + rise, abs=1e-6)
@@ -37,7 +35,8 @@ def test_leaky_junction_runs_away_at_the_limit_of_stability(share: float, runs_a
 
 def test_parts_on_one_heat_path_warm_each_other() -> None:
     board = netaudit.loads(
-        HEAD + "PS1 supply 10V +:A -:GND\nR1 resistor 100R R_th_jc=5K/W 1:A 2:GND\nR2 resistor 200R R_th_jc=10K/W 1:A 2:GND\n"
+        HEAD
+        + "PS1 supply 10V +:A -:GND\nR1 resistor 100R R_th_jc=5K/W 1:A 2:GND\nR2 resistor 200R R_th_jc=10K/W 1:A 2:GND\n"
         "same-heat R1 R2 R_th=20K/W\n"
     )
     point = board.solve()[0].points[0]

@@ -55,7 +55,9 @@ def test_several_points_are_a_finding_and_each_is_audited() -> None:
 
 
 def test_passive_boards_are_proven_and_say_why() -> None:
-    result = netaudit.loads(HEAD + "PS1 supply 5V +:A -:GND\nR1 resistor 1k 1:A 2:B\nD1 diode I_S=1nA A:B K:GND\n").solve()[0]
+    result = netaudit.loads(
+        HEAD + "PS1 supply 5V +:A -:GND\nR1 resistor 1k 1:A 2:B\nD1 diode I_S=1nA A:B K:GND\n"
+    ).solve()[0]
     assert result.uniqueness == "proven"
     assert "no other operating point" in result.because
     assert result.points[0].stable is True

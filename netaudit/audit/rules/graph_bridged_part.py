@@ -16,7 +16,11 @@ from netaudit.finding import Finding
 
 def find(site: Site) -> Iterable[Finding]:
     for device in site.graph.circuit.devices:
-        if len(device.pins) > 1 and len(set(device.pins.values())) == 1 and device.kind not in ("connector", "testpoint"):
+        if (
+            len(device.pins) > 1
+            and len(set(device.pins.values())) == 1
+            and device.kind not in ("connector", "testpoint")
+        ):
             net = next(iter(device.pins.values()))
             yield Finding(
                 RULE.name,

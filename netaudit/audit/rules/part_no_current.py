@@ -29,9 +29,7 @@ def find(site: Site) -> Iterable[Finding]:
         nets = [
             net
             for pin, net in device.pins.items()
-            if pin not in device.open_pins
-            and net not in graph.circuit.grounds
-            and graph.islands.find(net) in supplied
+            if pin not in device.open_pins and net not in graph.circuit.grounds and graph.islands.find(net) in supplied
         ]
         if nets:
             yield Finding(
