@@ -10,7 +10,6 @@ from netaudit.syntax.lines import LogicalLine
 
 #: (pattern, what is wrong, what would mend it); the place is the pattern's first group
 _KNOWN: tuple[tuple[re.Pattern[str], str, str], ...] = (
-    (re.compile(r"([\u201c\u201d\u201e\u2018\u2019])"), "a typographic quote", 'use the straight "'),
     (
         re.compile(r'^[^"]*(?:"(?:\\["\\]|[^"\\])*"[^"]*)*(")[^"]*$'),
         "a quote that is never closed",
@@ -27,6 +26,17 @@ _KNOWN: tuple[tuple[re.Pattern[str], str, str], ...] = (
     (re.compile(r"\S+:\S*?(:)\S*"), "a second : in PIN:NET", "a net name with a colon needs double quotes"),
     (re.compile(r"\S+=\S*(=)\S*"), "a second = in key=value", "put the value in double quotes"),
 )
+
+
+_TYPOGRAPHIC = re.compile(r'"(?:\\["\\]|[^"\\])*"|([\u201c\u201d\u201e\u2018\u2019])')
+
+
+def refuse_quotes(line: LogicalLine) -> None:
+    """Typographic quotes outside straight ones: a word processor was here."""
+    for match in _TYPOGRAPHIC.finditer(line.text):
+        if match[1]:
+            place = line.place(match.start(1), match.end(1))
+            raise InputError("a typographic quote", place=place, mend='use the straight "')
 
 
 def explain(line: LogicalLine, error: Any, first: bool) -> InputError:

@@ -12,7 +12,7 @@ from netaudit.failure import InputError
 from netaudit.place import Place
 from netaudit.syntax.grammar import grammar_text
 from netaudit.syntax.lines import LogicalLine
-from netaudit.syntax.mistakes import explain
+from netaudit.syntax.mistakes import explain, refuse_quotes
 from netaudit.syntax.statements import (
     AmbientStatement,
     CoveredStatement,
@@ -88,6 +88,8 @@ class Parser:
         """The statement of a line; ``first`` demands ``netlist 1``."""
         from lark.exceptions import UnexpectedInput
 
+        if not line.text.isascii():
+            refuse_quotes(line)
         try:
             tree = _tree(line.text)
         except UnexpectedInput as error:
