@@ -20,7 +20,7 @@ _ZERO_CELSIUS = Decimal("273.15")
 
 @dataclass(frozen=True, slots=True)
 class Scalar:
-    """A number in the SI unit; ``complete`` when a prefix, unit or code letter stood with it; a code's tolerance in %."""
+    """A number in SI; ``complete`` when a prefix, unit or code letter stood with it; a code's tolerance in percent."""
 
     value: float
     complete: bool
