@@ -1,7 +1,7 @@
 """Text to quantities: what a statement's items and a part table's cells mean once their unit is known.
 
-Every function takes the text, the canonical unit (``netaudit.quantities.units``) and the place for its error, and raises
-InputError.  Value codes (IEC 60062) are read wherever the unit is ohm, F or H; ``code=True`` also allows them where the
+Every function takes the text, the canonical unit (``netaudit.quantities.units``) and the place for its error, and
+raises InputError.  Value codes (IEC 60062) are read wherever the unit is ohm, F or H; ``code=True`` also allows them where the
 unit written decides what is meant (a load of A, W or ohm).
 """
 
@@ -136,7 +136,7 @@ def read_at(text: str, unit: str, at_unit: str, place: Place) -> tuple[Quantity,
 
 
 def rescale(old: Quantity, nominal: float) -> Quantity:
-    """The quantity with a new nominal: a percentage stays in proportion, a range or an absolute tolerance is dropped."""
+    """The quantity with a new nominal: a percentage stays in proportion, another span is dropped."""
     if old.spread != "percent" or old.nominal == 0.0:
         return exact(nominal, old.unit)
     ends = sorted((nominal * (old.low / old.nominal), nominal * (old.high / old.nominal)))

@@ -44,7 +44,8 @@ def engineering(value: float, unit: str, digits: int = 3) -> str:
     if not math.isfinite(value) or value == 0.0:
         return f"{_rounded(value, digits)} {unit}"
     exponent = 3 * math.floor(math.floor(math.log10(abs(float(f"{value:.{digits - 1}e}")))) / 3)
-    exponent = min(max(exponent, -18), 12)
+    if exponent not in PREFIX_OF:
+        return f"{_rounded(value, digits)} {unit}"
     # dividing by the exact power of ten keeps 4.7e-6 at 4.7
     scaled = value / 10.0**exponent if exponent >= 0 else value * 10.0**-exponent
     return f"{_rounded(scaled, digits)} {PREFIX_OF[exponent]}{unit}"
@@ -72,11 +73,11 @@ def _percent(q: Quantity) -> str | None:
     """``5%`` or ``-20%..+80%``."""
     if q.nominal == 0.0:
         return "0%" if q.low == q.high == 0.0 else None
-    flip = q.nominal < 0.0
-    near, far = (q.high, q.low) if flip else (q.low, q.high)
+    size = abs(q.nominal)
+    near, far = (q.high, q.low) if q.nominal < 0.0 else (q.low, q.high)
     # the same arithmetic as reading: nominal (100 + p) / 100
-    below = _preimage(lambda p: abs(q.nominal * (100.0 - p) / 100.0), abs(near), rising=False)
-    above = _preimage(lambda p: abs(q.nominal * (100.0 + p) / 100.0), abs(far), rising=True)
+    below = _preimage(lambda p: size * (100.0 - p) / 100.0, abs(near), rising=False)
+    above = _preimage(lambda p: size * (100.0 + p) / 100.0, abs(far), rising=True)
     if below is None or above is None or (q.low < 0.0 < q.high):
         return None
     both = max(below[0], above[0]), min(below[1], above[1])
@@ -109,7 +110,7 @@ def _preimage(f: Callable[[float], float], target: float, *, rising: bool) -> tu
 
 
 def _bisect(reached: Callable[[float], bool]) -> int:
-    """The ordinal of the least non-negative double for which a monotone condition holds (doubles in order of their bits)."""
+    """The ordinal (bit pattern) of the least non-negative double for which a monotone condition holds."""
     low, high = 0, 0x7FF0000000000000
     while low < high:
         middle = (low + high) // 2
