@@ -71,7 +71,7 @@ def _hottest(operation: Operation, explorer: Explorer) -> tuple[Followed, dict[s
     overrides, air = assign(explorer.spans, row[None, :], solver.system.circuit.ambient.nominal)
     ambient = np.broadcast_to(np.asarray(air, dtype=float), (1,))
     t0 = np.broadcast_to(ambient[:, None], (1, len(solver.system.devices))).copy()
-    job = Job(overrides, ambient, 1, np.zeros((1, solver.system.m)), t0)
+    job = Job(overrides, ambient, 1, solver.system.start[None, :], t0)
     return follow(solver, job), {v.key: float(x) for v, x in zip(explorer.spans, row, strict=True)}
 
 

@@ -97,8 +97,11 @@ class Assembly(Protocol):
     def source(self, row: int, value: Value) -> None:
         """s[row] += value (for a pin: a current that the device pushes out of itself into the net)."""
 
-    def branch(self, family: Family, inject: Terms, sense: Terms, **parameters: Value) -> None:
-        """A nonlinear branch: phi of the sum of ``sense`` terms, times each ``inject`` coefficient into its row."""
+    def branch(self, family: Family, inject: Terms, sense: Terms, *, start: Value = 0.0, **parameters: Value) -> None:
+        """A nonlinear branch: phi of the sum of ``sense`` terms, times each ``inject`` coefficient into its row.
+
+        ``start`` is the sum that an iteration sets out from: the side of a corner on which the part usually works.
+        """
 
     @property
     def carry_current(self) -> bool:

@@ -17,11 +17,11 @@ from netaudit.devices.base import (
     Growth,
     Key,
     Kind,
+    Value,
     Values,
     ValueSpec,
     View,
     conductance,
-    two_pin,
 )
 from netaudit.devices.common import power
 from netaudit.devices.families import RAMP
@@ -53,11 +53,15 @@ class Load(Kind):
         if unit == "ohm":
             conductance(a, p, q, 1.0 / value)
         elif unit == "W":
-            two_pin(a, FADING_POWER, p, q, P=value, V_min=values["V_min"])
+            ends: list[tuple[int, Value]] = [(p, 1.0), (q, -1.0)]
+            least = device.nominal("V_min")
+            a.branch(FADING_POWER, ends, ends, start=4 * least, P=value, V_min=values["V_min"])
         else:
             slope = value / np.asarray(values["V_min"])
             conductance(a, p, q, slope)
-            a.branch(RAMP, [(p, -slope), (q, slope)], [(p, 1.0), (q, -1.0)], offset=values["V_min"])
+            sense: list[tuple[int, Value]] = [(p, 1.0), (q, -1.0)]
+            least = device.nominal("V_min")
+            a.branch(RAMP, [(p, -slope), (q, slope)], sense, start=2 * least, offset=values["V_min"])
 
     def growth(self, device: Device) -> Growth:
         return {"ohm": "increasing", "A": "nondecreasing"}.get(device.values["value"].unit, "other")  # type: ignore[return-value]

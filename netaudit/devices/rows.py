@@ -18,7 +18,7 @@ def quiescent(a: Assembly, p: int, q: int, current: Value) -> None:
     """A current from p to q that is constant above FADE volts and falls to 0 at 0 V below."""
     slope = np.asarray(current) / FADE
     conductance(a, p, q, slope)
-    a.branch(RAMP, [(p, -slope), (q, slope)], [(p, 1.0), (q, -1.0)], offset=FADE)
+    a.branch(RAMP, [(p, -slope), (q, slope)], [(p, 1.0), (q, -1.0)], start=2 * FADE, offset=FADE)
 
 
 def clamp(a: Assembly, p: int, q: int, temperature: Value) -> None:

@@ -30,6 +30,7 @@ class Recorder:
         self.inject: list[tuple[int, int, Value]] = []
         self.sense: list[tuple[int, int, Value]] = []
         self.parameters: list[dict[str, Value]] = []
+        self.starts: list[float] = []
         self._pins: dict[str, int] = {}
         self._inner: dict[tuple[int, str], int] = {}
         self._device = -1
@@ -69,8 +70,9 @@ class Recorder:
         self.source_rows.append(row)
         self.s.append(value)
 
-    def branch(self, family: Family, inject: Terms, sense: Terms, **parameters: Value) -> None:
+    def branch(self, family: Family, inject: Terms, sense: Terms, *, start: Value = 0.0, **parameters: Value) -> None:
         k = len(self.families)
+        self.starts.append(float(np.asarray(start).reshape(-1)[0]))
         self.families.append(family)
         self.branch_device.append(self._device)
         self.parameters.append(parameters)

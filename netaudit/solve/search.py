@@ -79,7 +79,7 @@ def starts(solver: Solver, num: Numbers) -> Array:
     low = np.array([min(o) - 0.3 for o in options])
     high = np.array([max(o) + 0.3 for o in options])
     spread = low + (high - low) * rng.random((_SPREAD, solver.system.m))
-    return np.concatenate([np.zeros((1, solver.system.m)), rows, spread])
+    return np.concatenate([solver.system.start[None, :], rows, spread])
 
 
 def _picks(options: list[list[float]], rng: np.random.Generator) -> Iterator[list[int]]:

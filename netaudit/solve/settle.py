@@ -62,7 +62,7 @@ class Solver:
         """A job that starts from rest: all branch values zero, everything at ambient."""
         air: Value = self.system.circuit.ambient.nominal if ambient is None else ambient
         t0 = np.broadcast_to(np.asarray(air, dtype=float).reshape(-1, 1), (count, len(self.system.devices))).copy()
-        return Job(overrides or {}, air, count, np.zeros((count, self.system.m)), t0)
+        return Job(overrides or {}, air, count, np.tile(self.system.start, (count, 1)), t0)
 
     def settle(self, job: Job, remedies: bool = True) -> Settled:
         """Electrical and thermal unknowns together; without ``remedies`` members that Newton misses stay unconverged."""
@@ -110,7 +110,7 @@ class Solver:
         named = ["newton"] * len(u)
         for k in np.flatnonzero(~good) if remedies else ():
             one = num.take(np.array([k])) if num.batch else num
-            found = climb(self.system, one, np.zeros(self.system.m), self.linear)
+            found = climb(self.system, one, self.system.start, self.linear)
             steps[k] += found.iterations
             named[k] = found.method
             if found.x is not None:

@@ -106,6 +106,7 @@ class System:
         self.is_node = np.concatenate([np.ones(len(free), dtype=bool), np.array(record.inner_is_node, dtype=bool)])
         self.m = len(record.families)
         self.families = record.families
+        self.start = np.array(record.starts, dtype=float)
         self.branch_device: Index = np.array(record.branch_device, dtype=np.intp)
         self.g_row = _ints(record.rows)
         self.g_column = _ints(record.columns)
