@@ -24,7 +24,7 @@ Proof = Literal["proven", "bounded", "checked"]
 Objective = Callable[[Solved], Array]
 
 #: a gain below this share of the value is rounding, not an influence
-_NEGLIGIBLE = 2e-11
+_NEGLIGIBLE = 1e-12
 #: with at most this many values all vertices are solved besides those that sensitivities point to
 _ALL_VERTICES = 6
 _ROUNDS = 4
