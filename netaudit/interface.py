@@ -12,6 +12,7 @@ from netaudit.finding import Finding
 
 if TYPE_CHECKING:
     from netaudit.audit.records import Audit
+    from netaudit.audit.statistics import Plan
     from netaudit.parts.policy import Policy
     from netaudit.solve.point import ModeResult
 
@@ -53,12 +54,19 @@ class LoadedBoard:
 
         return tuple(operate(c) for c in self.board.circuits if not modes or c.mode in modes)
 
-    def audit(self, policy: str | Policy = "none", nominal: bool = False, modes: Sequence[str] = ()) -> Audit:
-        """Every check at its worst corner (at nominal values only with ``nominal``) in every mode or those named."""
+    def audit(
+        self,
+        policy: str | Policy = "none",
+        nominal: bool = False,
+        modes: Sequence[str] = (),
+        plan: Plan | None = None,
+    ) -> Audit:
+        """Every check at its worst corner (at nominal values only with ``nominal``) in every mode or those named;
+        with a ``plan`` of samples also statistics over drawn boards."""
         self._known(modes)
         from netaudit.audit.audit import audit
 
-        return audit(self.board, policy, nominal, modes)
+        return audit(self.board, policy, nominal, modes, plan)
 
     def _known(self, modes: Sequence[str]) -> None:
         for mode in modes:

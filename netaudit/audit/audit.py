@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping, Sequence
-from dataclasses import dataclass, replace
+from dataclasses import dataclass, field, replace
 
 from netaudit.audit.conduction import never_conducts
 from netaudit.audit.context import CONDUCTS, Context, context
@@ -12,7 +12,8 @@ from netaudit.audit.expectation import expectation_tasks
 from netaudit.audit.feeding import upstream
 from netaudit.audit.lint import lint, ordered
 from netaudit.audit.points import point_tasks
-from netaudit.audit.records import Audit, Stress
+from netaudit.audit.records import Audit, SampledStress, Stress
+from netaudit.audit.statistics import Plan, sample
 from netaudit.audit.stress import Watched, beyond, corner_text, findings_of, stress_of, watched
 from netaudit.audit.tasks import Task
 from netaudit.audit.thermal import thermal_findings
@@ -32,6 +33,7 @@ class Options:
     policy: Policy
     nominal: bool = False
     partial: bool = False
+    plan: Plan | None = None
 
 
 @dataclass
@@ -43,17 +45,25 @@ class ModeAudit:
     findings: list[Finding]
     watched: list[Watched]
     units: dict[str, str]
+    samples: list[SampledStress] = field(default_factory=list)
 
 
-def audit(board: Board, policy: str | Policy = "none", nominal: bool = False, modes: Sequence[str] = ()) -> Audit:
+def audit(
+    board: Board,
+    policy: str | Policy = "none",
+    nominal: bool = False,
+    modes: Sequence[str] = (),
+    plan: Plan | None = None,
+) -> Audit:
     """The audit of a board.
 
-    ``policy`` by name, file or as loaded; ``nominal`` looks at nominal values only; ``modes``: only these.
+    ``policy`` by name, file or as loaded; ``nominal`` looks at nominal values only; ``modes``: only these; ``plan``:
+    samples to draw besides.
     Raises InputError for a policy that cannot be read.
     """
     loaded = load_policy(policy) if isinstance(policy, str) else policy
     chosen = tuple(c for c in board.circuits if not modes or c.mode in modes)
-    options = Options(loaded, nominal, len(chosen) < len(board.circuits))
+    options = Options(loaded, nominal, len(chosen) < len(board.circuits), plan)
     board = replace(board, circuits=chosen)
     operations = [(op := Operation(c), op.result()) for c in chosen]
     known = context(board, [result for _, result in operations])
@@ -90,6 +100,8 @@ def _joined(board: Board, audits: Sequence[ModeAudit], options: Options) -> Audi
         tuple(sorted({d.part.name for d in fitted(board).values() if d.part is not None and d.part.generic})),
         _without_row(every, options.policy),
         {key: unit for one in audits for key, unit in one.units.items()},
+        options.plan,
+        tuple(s for one in audits for s in one.samples),
     )
 
 
@@ -136,12 +148,24 @@ def _audit_mode(board: Board, operation: Operation, result: ModeResult, options:
         explorer = Explorer(operation.solver, nominal, options.nominal)
         _explore(explorer, items, tasks, out, None)
         out.findings += thermal_findings(operation, explorer, result, point)
+        if options.plan is not None and explorer.spans:
+            out.samples += _sampled(explorer, items, options.plan, result.mode)
     _variants(operation.circuit, out, options)
     out.stresses = _worst_of(out.stresses)
     devices = {d.name: d for d in operation.circuit.devices}
     for stress in _told_once(out.stresses):
         out.findings += findings_of(stress, devices[stress.device], out.units)
     return out
+
+
+def _sampled(explorer: Explorer, items: Sequence[Watched], plan: Plan, mode: str) -> Iterable[SampledStress]:
+    """Statistics of every rated stress over drawn boards."""
+    rated = [
+        (i, o) for i in items if not i.limit.missing and i.check.quantity != "reverse-polarity" for o in i.objectives()
+    ]
+    found = sample(explorer.solver, explorer.boards[0], explorer.spans, [o for _, o in rated], plan)
+    for (item, _), statistics in zip(rated, found, strict=True):
+        yield SampledStress(item.device.name, item.check.quantity, mode, statistics)
 
 
 def _told_once(stresses: Sequence[Stress]) -> Iterable[Stress]:

@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Mapping
 from dataclasses import dataclass, field
 
+from netaudit.audit.statistics import Plan, Sampled
 from netaudit.audit.worst import Proof
 from netaudit.circuit.circuit import Board
 from netaudit.finding import Finding, Level, rank
@@ -58,6 +59,16 @@ class Coverage:
 
 
 @dataclass(frozen=True)
+class SampledStress:
+    """What drawn boards say of one stress in one mode: statistics of its ratio to the limit."""
+
+    device: str
+    quantity: str
+    mode: str
+    statistics: Sampled
+
+
+@dataclass(frozen=True)
 class Audit:
     """The audit of one board.
 
@@ -76,6 +87,8 @@ class Audit:
     generic: tuple[str, ...] = ()
     without_row: tuple[str, ...] = ()
     units: Mapping[str, str] = field(default_factory=dict)
+    plan: Plan | None = None
+    samples: tuple[SampledStress, ...] = ()
 
     def fails(self, level: Level = "error", require_complete: bool = False) -> bool:
         """Whether something stands at or above the level, or is missing where completeness is required."""

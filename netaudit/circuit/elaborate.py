@@ -8,6 +8,7 @@ from dataclasses import dataclass, field, replace
 from netaudit.circuit.blocks import Opener
 from netaudit.circuit.build import Builder, covered
 from netaudit.circuit.circuit import Board, Circuit, Expectation, HeatPath
+from netaudit.circuit.packages import opened_packages, package_statement
 from netaudit.circuit.raw import RawDevice, Spec, changed, sort_items
 from netaudit.devices import KINDS
 from netaudit.devices.base import Device
@@ -21,6 +22,7 @@ from netaudit.syntax.statements import (
     BlockStatement,
     ChangeStatement,
     CoveredStatement,
+    DeviceStatement,
     ExpectStatement,
     ExportStatement,
     GroundStatement,
@@ -67,9 +69,11 @@ class Elaboration:
         self.builder = Builder(table, netlist.root)
         self.grounds = tuple(dict.fromkeys(s.net.text for s in netlist.statements if isinstance(s, GroundStatement)))
         self.blocks = self._blocks()
-        self.opened = Opener(self.blocks, frozenset(self.grounds)).open(netlist.statements)
+        exported, packages = self._exported()
+        statements = opened_packages(netlist.statements, table, self.blocks)
+        self.opened = Opener(self.blocks, frozenset(self.grounds)).open([*packages, *statements])
         self.raws: dict[str, RawDevice] = {}
-        for raw in [*self._exported(), *self.opened.devices]:
+        for raw in [*exported, *self.opened.devices]:
             if raw.name in self.raws:
                 first = self.raws[raw.name].place
                 raise InputError(
@@ -99,24 +103,26 @@ class Elaboration:
             found[s.name.text] = s
         return found
 
-    def _exported(self) -> list[RawDevice]:
-        """Devices of included exports, the tables of one board taken together."""
+    def _exported(self) -> tuple[list[RawDevice], list[DeviceStatement]]:
+        """Devices and packages of included exports, the tables of one board taken together."""
         exports = [s.export for s in self.netlist.statements if isinstance(s, ExportStatement)]
         if not exports:
-            return []
+            return [], []
         from netaudit.circuit.mapping import map_export
         from netaudit.syntax.tables import merged
 
         tables = [e for e in exports if e.file.lower().endswith(".csv")]
         drawn = [e for e in exports if not e.file.lower().endswith(".csv")]
         devices: list[RawDevice] = []
+        packages: list[DeviceStatement] = []
         for export in [*drawn, *([merged(tables)] if tables else [])]:
             mapped = map_export(export, self.table)
             devices += mapped.devices
+            packages += [package_statement(i, part, self.blocks) for i, part in mapped.packages]
             self.cautions += mapped.remarks
             for finding in mapped.findings:
                 self.builder.findings[(finding.rule, finding.device or "")] = finding
-        return devices
+        return devices, packages
 
     def _net_names(self) -> tuple[str, ...]:
         nets = dict.fromkeys(self.grounds)

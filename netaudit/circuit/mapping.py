@@ -60,12 +60,17 @@ class Mapped:
     findings: list[Finding] = field(default_factory=list)
     remarks: list[str] = field(default_factory=list)
     counts: dict[tuple[str, str], int] = field(default_factory=dict)
+    packages: list[tuple[Instance, Part]] = field(default_factory=list)
 
 
 def map_export(export: Export, table: PartTable) -> Mapped:
     """Devices of an export; nothing is dropped silently."""
     mapped = Mapped(remarks=[f"{export.file}: {r}" for r in export.remarks])
     for instance in gathered(export.instances):
+        part = find_part(instance, table)
+        if part is not None and part.block is not None:
+            mapped.packages.append((instance, part))
+            continue
         device, rule = _device(instance, table, mapped)
         mapped.devices.append(device)
         key = (device.kind.name, rule)
@@ -76,7 +81,9 @@ def map_export(export: Export, table: PartTable) -> Mapped:
 
 def _summary(export: Export, mapped: Mapped) -> str:
     kinds = ", ".join(f"{n} {kind} by {rule}" for (kind, rule), n in sorted(mapped.counts.items(), key=lambda c: -c[1]))
-    return f"{export.file}: {len(mapped.devices)} parts, {len(export.nets)} nets: {kinds}"
+    return f"{export.file}: {len(mapped.devices) + len(mapped.packages)} parts, {len(export.nets)} nets: {kinds}" + (
+        f", {len(mapped.packages)} packages of several devices" if mapped.packages else ""
+    )
 
 
 def gathered(instances: Sequence[Instance]) -> list[Instance]:

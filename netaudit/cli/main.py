@@ -18,6 +18,8 @@ from netaudit.cli import (
     explain_command,
     fit_command,
     lint_command,
+    parts_command,
+    size_command,
     solve_command,
 )
 from netaudit.cli.common import abandon_stdout, refuse
@@ -34,6 +36,17 @@ examples:
 exit status: 0 nothing at or above --fail-on, 1 something is, 2 the command, a file or a netlist is wrong,
 3 a fault of netaudit itself
 """
+
+_COMMANDS = (
+    lint_command,
+    solve_command,
+    audit_command,
+    size_command,
+    explain_command,
+    fit_command,
+    convert_command,
+    parts_command,
+)
 
 
 class _Parser(argparse.ArgumentParser):
@@ -54,7 +67,7 @@ def parser() -> argparse.ArgumentParser:
     )
     top.add_argument("--version", action="version", version=f"netaudit {__version__}")
     commands = top.add_subparsers(dest="command", metavar="COMMAND", required=True)
-    for module in (lint_command, solve_command, audit_command, explain_command, fit_command, convert_command):
+    for module in _COMMANDS:
         module.add(commands)
     return top
 

@@ -8,6 +8,7 @@ from collections.abc import Mapping, Sequence
 from typing import Any
 
 from netaudit.audit.records import Audit, Stress
+from netaudit.audit.statistics import QUANTILES
 from netaudit.circuit.circuit import Board
 from netaudit.finding import Finding
 from netaudit.solve.point import ModeResult, Point
@@ -71,6 +72,34 @@ def stress_record(s: Stress) -> dict[str, Any]:
     }
 
 
+def samples_record(audit: Audit) -> dict[str, Any] | None:
+    """Statistics over drawn boards; None when none were drawn."""
+    if audit.plan is None:
+        return None
+    rows = [
+        {
+            "device": s.device,
+            "quantity": s.quantity,
+            "mode": s.mode,
+            "quantiles": dict(zip((str(q) for q in QUANTILES), s.statistics.quantiles, strict=True)),
+            "beyond": s.statistics.beyond,
+            "interval": list(s.statistics.interval),
+            "drivers": dict(s.statistics.drivers),
+            "unsolved": s.statistics.unsolved,
+        }
+        for s in audit.samples
+    ]
+    plan = audit.plan
+    return {
+        "count": plan.count,
+        "seed": plan.seed,
+        "sequence": plan.method,
+        "distribution": plan.distribution,
+        "together": [list(group) for group in plan.together],
+        "stress": rows,
+    }
+
+
 def lint_record(board: Board, findings: Sequence[Finding], failed: bool, version: str) -> dict[str, Any]:
     return {
         "schema": "netaudit/lint/1",
@@ -104,6 +133,7 @@ def audit_record(audit: Audit, failed: bool, version: str) -> dict[str, Any]:
         },
         "findings": [finding_record(f) for f in audit.findings],
         "stress": [stress_record(s) for s in audit.stresses],
+        "samples": samples_record(audit),
         "modes": [
             {"mode": r.mode, "uniqueness": r.uniqueness, "because": r.because, "points": len(r.points)}
             for r in audit.results

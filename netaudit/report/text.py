@@ -68,10 +68,39 @@ def audit_text(audit: Audit, failed: bool, style: Style, notes: bool, version: s
     lines = [*_headline(audit.board, failed, style, "audit", audit.complete), *_coverage(audit, style), ""]
     lines += findings_text(audit.findings, style, notes)
     lines += ["", *_stresses(audit, style), ""]
+    if audit.plan is not None:
+        lines += [*_samples(audit, style), ""]
     lines += [c for text in _remarks(audit) for c in wrapped(text, style.width, "")]
     lines += ["", *(c for caution in CAUTIONS for c in wrapped(caution, style.width, ""))]
     lines.append(style.faint(f"netaudit {version}, policy {audit.policy}"))
     return "\n".join(lines) + "\n"
+
+
+def _samples(audit: Audit, style: Style) -> list[str]:
+    """Statistics over drawn boards, the largest share beyond a limit first."""
+    plan = audit.plan
+    if plan is None or not audit.samples:
+        return ["No samples: nothing that is rated varies."]
+    said = f"{plan.count} boards drawn ({plan.method}, {plan.distribution}, seed {plan.seed}):"
+    rows = [["part", "stress", "median", "95 %", "99 %", "beyond limit", "95 % interval", "driven by"]]
+    order = sorted(audit.samples, key=lambda s: (-s.statistics.beyond, -s.statistics.quantiles[3]))
+    for s in order[:_SHOWN_STRESSES]:
+        q, (low, high) = s.statistics.quantiles, s.statistics.interval
+        drivers = ", ".join(f"{key} {share * 100:.0f} %" for key, share in s.statistics.drivers[:3])
+        mode = f" [{s.mode}]" if len(audit.results) > 1 else ""
+        rows.append(
+            [
+                s.device,
+                s.quantity.replace("-", " ") + mode,
+                f"{q[1] * 100:.0f} %",
+                f"{q[2] * 100:.0f} %",
+                f"{q[3] * 100:.0f} %",
+                f"{s.statistics.beyond * 100:.2g} %",
+                f"{low * 100:.2g}..{high * 100:.2g} %",
+                drivers,
+            ]
+        )
+    return [*wrapped(said, style.width, ""), *table(rows, style)]
 
 
 def _remarks(audit: Audit) -> Iterable[str]:
