@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from bisect import bisect_right
 from collections.abc import Iterator
 from dataclasses import dataclass
 
@@ -34,17 +35,24 @@ class LogicalLine:
         """The place of characters start..end of the joined text."""
         piece = self.pieces[0]
         if len(self.pieces) > 1:
-            piece = next(p for p in reversed(self.pieces) if p.start <= start or p is self.pieces[0])
+            piece = self.pieces[bisect_right(self.pieces, start, key=_start) - 1]
         column = start - piece.start + 1
         stop = None if end is None else min(end - piece.start + 1, len(piece.source) + 1)
         return Place(self.file, piece.line, column, stop, piece.source, self.chain)
 
 
+def _start(piece: Piece) -> int:
+    return piece.start
+
+
 def logical_lines(text: str, file: str, chain: tuple[Place, ...] = ()) -> Iterator[LogicalLine]:
     """The statements of a text, empty ones left out."""
-    joined, pieces = "", []
+    joined: str = ""
+    pieces: list[Piece] = []
     for number, raw in enumerate(text.split("\n"), start=1):
         source = raw.removesuffix("\r")
+        if not pieces and (not source or (source[0] == "#" and source.isprintable())):
+            continue
         _no_controls(source, file, number, chain)
         body = _without_comment(source, file, number, chain)
         more = body.rstrip().endswith("\\") and not _inside_quotes(body)

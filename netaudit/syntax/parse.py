@@ -2,17 +2,16 @@
 
 from __future__ import annotations
 
-import re
 from collections.abc import Callable
 from dataclasses import dataclass
-from functools import cache, lru_cache
-from typing import Any
 
 from netaudit.failure import InputError
 from netaudit.place import Place
-from netaudit.syntax.grammar import grammar_text
+from netaudit.quantities.text import shown
+from netaudit.syntax import words
 from netaudit.syntax.lines import LogicalLine
-from netaudit.syntax.mistakes import explain, refuse_quotes
+from netaudit.syntax.mistakes import explain, refuse_lookalikes, unknown_statement
+from netaudit.syntax.shape import Token, shapes
 from netaudit.syntax.statements import (
     AmbientStatement,
     CoveredStatement,
@@ -20,11 +19,9 @@ from netaudit.syntax.statements import (
     Draw,
     ExpectStatement,
     GroundStatement,
-    Items,
     KeyItem,
     OmitStatement,
     PartsStatement,
-    PinItem,
     PlaceStatement,
     SameHeatStatement,
     SetStatement,
@@ -32,29 +29,9 @@ from netaudit.syntax.statements import (
     TitleStatement,
     Word,
 )
+from netaudit.syntax.words import RESERVED as RESERVED
 
-_NAME = re.compile(r"^[A-Za-z0-9_+\-./~]+$")
-_SPLIT = re.compile(r'("(?:\\["\\]|[^"\\])*"|[^":=]+)([:=]|$)')
-RESERVED = frozenset(
-    [
-        "netlist",
-        "title",
-        "parts",
-        "include",
-        "ground",
-        "ambient",
-        "omit",
-        "place",
-        "set",
-        "only",
-        "mode",
-        "end",
-        "block",
-        "expect",
-        "same-heat",
-        "covered",
-    ]
-)
+Tokens = list[Token]
 
 
 @dataclass(frozen=True)
@@ -68,36 +45,23 @@ class Mark:
     defaults: tuple[KeyItem, ...] = ()
 
 
-@cache
-def _lark() -> Any:
-    from lark import Lark
-
-    return Lark(grammar_text("netlist.lark"), parser="lalr", lexer="contextual", propagate_positions=False)
-
-
-@lru_cache(maxsize=1024)
-def _tree(text: str) -> Any:
-    """The tree of a line; tokens count from the line's start, so that equal lines share one."""
-    return _lark().parse(text).children[0]
-
-
 class Parser:
     """Parses the lines of one file."""
 
+    def __init__(self) -> None:
+        self._shapes = shapes()
+
     def parse(self, line: LogicalLine, *, first: bool) -> Statement | Mark:
         """The statement of a line; ``first`` demands ``netlist 1``."""
-        from lark.exceptions import UnexpectedInput
-
         if not line.text.isascii():
-            refuse_quotes(line)
+            refuse_lookalikes(line)
         try:
-            tree = _tree(line.text)
-        except UnexpectedInput as error:
+            shaped = self._shapes.read(line.text)
+        except self._shapes.refusal as error:
             raise explain(line, error, first) from None
-        make: Callable[[LogicalLine, list[Any]], Statement | Mark] = _MAKERS[tree.data]
-        if first != (tree.data == "netlist"):
+        if first != (shaped.rule == "netlist"):
             raise _order(line, first)
-        return make(line, tree.children)
+        return _MAKERS[shaped.rule](line, shaped.tokens)
 
 
 def _order(line: LogicalLine, first: bool) -> InputError:
@@ -109,132 +73,54 @@ def _order(line: LogicalLine, first: bool) -> InputError:
     return InputError("a second netlist statement", place=line.place(start), mend="remove it")
 
 
-def _word(line: LogicalLine, token: Any) -> Word:
-    return _text(line, str(token), token.start_pos)
-
-
-def _text(line: LogicalLine, text: str, start: int) -> Word:
-    place = line.place(start, start + len(text))
-    if text.startswith('"'):
-        return Word(re.sub(r'\\(["\\])', r"\1", text[1:-1]), place, True)
-    return Word(text, place)
-
-
-def _name(line: LogicalLine, token: Any, what: str, reserved: bool = False) -> Word:
-    return _checked(_word(line, token), what, reserved)
-
-
-def _checked(word: Word, what: str, reserved: bool = False) -> Word:
-    if word.quoted:
-        if not word.text.strip():
-            raise InputError(f"an empty {what}", place=word.place, mend="give it a name")
-        return word
-    if not _NAME.match(word.text) or ".." in word.text:
-        raise InputError(
-            f"{word.text!r} needs quotes as a {what}", place=word.place, mend=f'write "{word.text}" in double quotes'
-        )
-    if reserved and word.text in RESERVED:
-        raise InputError(
-            f"{word.text} is a statement's word", place=word.place, mend=f'as a {what} it needs quotes: "{word.text}"'
-        )
-    return word
-
-
 def _whole(line: LogicalLine) -> Place:
     start = len(line.text) - len(line.text.lstrip())
     return line.place(start, len(line.text.rstrip()))
 
 
-def _pair(line: LogicalLine, token: Any) -> list[Word]:
-    """The parts of PIN:NET, key=value or PIN:PIN=value."""
-    out, position = [], 0
-    text = str(token)
-    while position < len(text):
-        match = _SPLIT.match(text, position)
-        if match is None:
-            # the value of a key may hold anything: the rest is one word
-            out.append(_text(line, text[position:], token.start_pos + position))
-            break
-        out.append(_text(line, match[1], token.start_pos + position))
-        position = match.end()
-    return out
-
-
-def _key(line: LogicalLine, token: Any) -> KeyItem:
-    name, value = str(token).split("=", 1)
-    start = token.start_pos
-    return KeyItem(_text(line, name, start), _text(line, value, start + len(name) + 1))
-
-
-def _pin(line: LogicalLine, token: Any) -> PinItem:
-    pin, net = _pair(line, token)
-    return PinItem(_checked(pin, "pin"), _checked(net, "net"))
-
-
-def _items(line: LogicalLine, tokens: list[Any]) -> Items:
-    words, keys, pins = [], [], []
-    for item in tokens:
-        token = item.children[0]
-        if token.type == "PIN":
-            pins.append(_pin(line, token))
-        elif token.type == "KEY":
-            keys.append(_key(line, token))
-        else:
-            words.append(_word(line, token))
-    _once([k.key for k in keys], "key")
-    _once([p.pin for p in pins], "pin")
-    return Items(tuple(words), tuple(keys), tuple(pins))
-
-
-def _once(words: list[Word], what: str) -> None:
-    seen: set[str] = set()
-    for word in words:
-        if word.text in seen:
-            raise InputError(f"{what} {word.text} stands twice", place=word.place, mend="keep one of them")
-        seen.add(word.text)
-
-
-def _make_netlist(line: LogicalLine, c: list[Any]) -> Mark:
-    if str(c[0]) != "1":
+def _make_netlist(line: LogicalLine, c: Tokens) -> Mark:
+    if c[0].text != "1":
         raise InputError(
-            f"netlist version {c[0]} is not known", place=_word(line, c[0]).place, mend="this release reads: netlist 1"
+            f"netlist version {shown(c[0].text)} is not known",
+            place=words.of(line, c[0]).place,
+            mend="this release reads: netlist 1",
         )
-    return Mark("netlist", _word(line, c[0]), _whole(line))
+    return Mark("netlist", words.of(line, c[0]), _whole(line))
 
 
-def _make_title(line: LogicalLine, c: list[Any]) -> Statement:
-    return TitleStatement(_word(line, c[0]), _whole(line))
+def _make_title(line: LogicalLine, c: Tokens) -> Statement:
+    return TitleStatement(words.of(line, c[0]), _whole(line))
 
 
-def _make_parts(line: LogicalLine, c: list[Any]) -> Statement:
-    word = _word(line, c[0])
+def _make_parts(line: LogicalLine, c: Tokens) -> Statement:
+    word = words.of(line, c[0])
     if not word.quoted and word.text != "common":
         raise InputError(
-            f"parts {word.text}",
+            f"parts {shown(word.text)}",
             place=word.place,
-            mend=f'a file stands in quotes: parts "{word.text}", or: parts common',
+            mend=f'a file stands in quotes: parts "{word.text[:60]}", or: parts common',
         )
     return PartsStatement(word, "", _whole(line))
 
 
-def _make_ground(line: LogicalLine, c: list[Any]) -> Statement:
-    return GroundStatement(_name(line, c[0], "net"), _whole(line))
+def _make_ground(line: LogicalLine, c: Tokens) -> Statement:
+    return GroundStatement(words.name(line, c[0], "net"), _whole(line))
 
 
-def _make_ambient(line: LogicalLine, c: list[Any]) -> Statement:
-    return AmbientStatement(tuple(_word(line, t) for t in c if t is not None), _whole(line))
+def _make_ambient(line: LogicalLine, c: Tokens) -> Statement:
+    return AmbientStatement(tuple(words.of(line, t) for t in c), _whole(line))
 
 
-def _make_omit(line: LogicalLine, c: list[Any]) -> Statement:
-    return OmitStatement(tuple(_name(line, t, "designator") for t in c), _whole(line))
+def _make_omit(line: LogicalLine, c: Tokens) -> Statement:
+    return OmitStatement(tuple(words.name(line, t, "designator") for t in c), _whole(line))
 
 
-def _make_place(line: LogicalLine, c: list[Any]) -> Statement:
-    return PlaceStatement(tuple(_name(line, t, "designator") for t in c), _whole(line))
+def _make_place(line: LogicalLine, c: Tokens) -> Statement:
+    return PlaceStatement(tuple(words.name(line, t, "designator") for t in c), _whole(line))
 
 
-def _make_change(line: LogicalLine, c: list[Any]) -> Statement:
-    items = _items(line, c[1:])
+def _make_change(line: LogicalLine, c: Tokens) -> Statement:
+    items = words.items(line, c[1:])
     if items.pins:
         pin = items.pins[0].pin
         raise InputError(
@@ -242,90 +128,108 @@ def _make_change(line: LogicalLine, c: list[Any]) -> Statement:
         )
     if not items.words and not items.keys:
         raise InputError("set without a change", place=_whole(line), mend="say what changes: set R1 1k")
-    return SetStatement(_name(line, c[0], "designator"), items, _whole(line))
+    return SetStatement(words.name(line, c[0], "designator"), items, _whole(line))
 
 
-def _make_only(line: LogicalLine, c: list[Any]) -> Mark:
-    word = _word(line, c[0])
+def _make_only(line: LogicalLine, c: Tokens) -> Mark:
+    word = words.of(line, c[0])
     if word.text != "modes":
-        raise InputError(f"only {word.text}", place=word.place, mend="did you mean: only modes")
+        raise InputError(f"only {shown(word.text)}", place=word.place, mend="did you mean: only modes")
     return Mark("only", word, _whole(line))
 
 
-def _make_mode(line: LogicalLine, c: list[Any]) -> Mark:
-    return Mark("mode", _word(line, c[0]), _whole(line))
+def _make_mode(line: LogicalLine, c: Tokens) -> Mark:
+    return Mark("mode", words.of(line, c[0]), _whole(line))
 
 
-def _make_end(line: LogicalLine, c: list[Any]) -> Mark:
+def _make_end(line: LogicalLine, c: Tokens) -> Mark:
     place = _whole(line)
     return Mark("end", Word("end", place), place)
 
 
-def _make_include(line: LogicalLine, c: list[Any]) -> Mark:
-    return Mark("include", _word(line, c[0]), _whole(line))
+def _make_include(line: LogicalLine, c: Tokens) -> Mark:
+    return Mark("include", words.of(line, c[0]), _whole(line))
 
 
-def _make_block(line: LogicalLine, c: list[Any]) -> Mark:
-    pins = tuple(_name(line, t, "pin") for t in c[1:] if t.type != "KEY")
-    keys = tuple(_key(line, t) for t in c[1:] if t.type == "KEY")
-    _once(list(pins), "pin")
-    _once([k.key for k in keys], "key")
-    return Mark("block", _name(line, c[0], "block"), _whole(line), pins, keys)
+def _make_block(line: LogicalLine, c: Tokens) -> Mark:
+    pins = tuple(words.name(line, t, "pin") for t in c[1:] if t.type != "KEY")
+    keys = tuple(words.key(line, t) for t in c[1:] if t.type == "KEY")
+    words.once(pins, "pin")
+    words.once((k.key for k in keys), "key")
+    return Mark("block", words.name(line, c[0], "block"), _whole(line), pins, keys)
 
 
-def _make_expect(line: LogicalLine, c: list[Any]) -> Statement:
-    tokens = [t.children[0] for t in c[1:]]
+def _make_expect(line: LogicalLine, c: Tokens) -> Statement:
+    tokens = c[1:]
     mode = None
-    if len(tokens) >= 3 and tokens[-1].type == "STRING" and str(tokens[-2]) == "mode":
-        mode = _word(line, tokens[-1])
+    if len(tokens) >= 3 and tokens[-1].type == "STRING" and tokens[-2].text == "mode":
+        mode = words.of(line, tokens[-1])
         tokens = tokens[:-2]
+    elif len(tokens) >= 4 and tokens[-2].text == "mode" and ".." in tokens[-3].text:
+        name = words.of(line, tokens[-1])
+        raise InputError(
+            f"the mode {shown(name.text)} stands without quotes",
+            place=name.place,
+            mend=f'write mode "{name.text[:60]}"',
+        )
     if len(tokens) < 2:
         raise InputError(
             "an expectation needs a target and a range", place=_whole(line), mend="write: expect voltage NET 4.5V..5.5V"
         )
-    span = _word(line, tokens[-1])
+    span = words.of(line, tokens[-1])
     targets, pin = [], None
     for token in tokens[:-1]:
         if token.type == "PIN":
-            device, pin = _pair(line, token)
-            targets.append(_checked(device, "designator"))
+            device, pin = words.pair(line, token)
+            targets.append(words.checked(device, "designator"))
         else:
-            targets.append(_name(line, token, "net or designator"))
-    quantity = _word(line, c[0])
+            targets.append(words.name(line, token, "net or designator"))
+    quantity = words.of(line, c[0])
     most = 2 if quantity.text == "voltage" else 1
     if len(targets) > most:
         raise InputError(
-            f"{len(targets)} targets of one {quantity.text}", place=targets[-1].place, mend=f"at most {most}"
+            f"{len(targets)} targets of one {shown(quantity.text)}", place=targets[-1].place, mend=f"at most {most}"
         )
     return ExpectStatement(quantity, tuple(targets), pin, span, mode, _whole(line))
 
 
-def _make_same_heat(line: LogicalLine, c: list[Any]) -> Statement:
-    key = _key(line, c[-1])
+def _make_same_heat(line: LogicalLine, c: Tokens) -> Statement:
+    key = words.key(line, c[-1])
     if key.key.text != "R_th":
-        raise InputError(f"same-heat takes R_th, not {key.key.text}", place=key.key.place, mend="write R_th=20K/W")
-    return SameHeatStatement(tuple(_name(line, t, "designator") for t in c[:-1]), key.value, _whole(line))
+        raise InputError(
+            f"same-heat takes R_th, not {shown(key.key.text)}", place=key.key.place, mend="write R_th=20K/W"
+        )
+    if len(c) < 3:
+        raise InputError("same-heat with a single part", place=_whole(line), mend="name every part on the heat path")
+    return SameHeatStatement(tuple(words.name(line, t, "designator") for t in c[:-1]), key.value, _whole(line))
 
 
-def _make_covered(line: LogicalLine, c: list[Any]) -> Statement:
-    what = _word(line, c[2])
+def _make_covered(line: LogicalLine, c: Tokens) -> Statement:
+    what = words.of(line, c[2])
     draws = []
     for token in c[3:]:
-        source, sink, value = _pair(line, token)
-        draws.append(Draw(_checked(source, "pin"), _checked(sink, "pin"), value))
+        source, sink, value = words.pair(line, token)
+        draws.append(Draw(words.checked(source, "pin"), words.checked(sink, "pin"), value))
     if what.text == "draws" and not draws:
         raise InputError("draws without a current", place=what.place, mend="write: draws VCC:GND=80mA")
     if what.text not in ("draws", "no-current") or (what.text == "no-current" and draws):
-        raise InputError(f"covered … {what.text}", place=what.place, mend="no-current, or: draws VCC:GND=80mA")
-    return CoveredStatement(_name(line, c[0], "designator"), _word(line, c[1]), tuple(draws), _whole(line))
+        raise InputError(f"covered … {shown(what.text)}", place=what.place, mend="no-current, or: draws VCC:GND=80mA")
+    return CoveredStatement(words.name(line, c[0], "designator"), words.of(line, c[1]), tuple(draws), _whole(line))
 
 
-def _make_device(line: LogicalLine, c: list[Any]) -> Statement:
-    designator = _name(line, c[0], "designator", reserved=True)
-    return DeviceStatement(designator, _word(line, c[1]), _items(line, c[2:]), _whole(line))
+def _make_device(line: LogicalLine, c: Tokens) -> Statement:
+    designator = words.name(line, c[0], "designator", reserved=True)
+    items = words.items(line, c[2:])
+    if not items.pins and not designator.quoted:
+        meant = unknown_statement(designator.text)
+        if meant is not None:
+            raise InputError(
+                f"{shown(designator.text)} is not a statement", place=designator.place, mend=f"did you mean {meant}?"
+            )
+    return DeviceStatement(designator, words.of(line, c[1]), items, _whole(line))
 
 
-_MAKERS: dict[str, Callable[[LogicalLine, list[Any]], Statement | Mark]] = {
+_MAKERS: dict[str, Callable[[LogicalLine, Tokens], Statement | Mark]] = {
     "netlist": _make_netlist,
     "title": _make_title,
     "parts": _make_parts,

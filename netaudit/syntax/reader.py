@@ -2,7 +2,10 @@
 
 from __future__ import annotations
 
+import gc
 import hashlib
+from collections.abc import Iterator
+from contextlib import contextmanager
 from dataclasses import dataclass, field, replace
 from pathlib import Path
 
@@ -40,15 +43,29 @@ class _Reading:
 def read_netlist(path: str, *, root: str | None = None) -> Netlist:
     """A netlist and all that it includes.  Raises InputError with the place of whatever cannot be used."""
     reading = _Reading(project_root(path, root))
-    _read_file(path, path, reading, (), (str(Path(path).resolve()),))
+    with _collector_paused():
+        _read_file(path, path, reading, (), (str(Path(path).resolve()),))
     return Netlist(path, reading.root, tuple(reading.statements), reading.only_modes, reading.files)
 
 
 def read_netlist_text(text: str, name: str = "netlist") -> Netlist:
     """The same for a text that stands nowhere; its includes are looked for from the current folder."""
     reading = _Reading(project_root(name))
-    _read_text(text, name, reading, (), ())
+    with _collector_paused():
+        _read_text(text, name, reading, (), ())
     return Netlist(name, reading.root, tuple(reading.statements), reading.only_modes, reading.files)
+
+
+@contextmanager
+def _collector_paused() -> Iterator[None]:
+    """Statements are millions of small records without cycles: the collector would only walk them again and again."""
+    running = gc.isenabled()
+    gc.disable()
+    try:
+        yield
+    finally:
+        if running:
+            gc.enable()
 
 
 def _read_file(path: str, shown: str, reading: _Reading, chain: tuple[Place, ...], above: tuple[str, ...]) -> None:
