@@ -53,8 +53,8 @@ class Converter(Kind):
         a.source(q, 0.5 * least)
         a.branch(RAMP, [(q, -1.0)], [(i, 1.0), (g, -1.0)], offset=0.5 * least)
         scale = device.nominal("value") / device.nominal("limit", 1.0)
-        product(a, k, 1.0, k, [(q, 1.0)], scale)
-        product(a, k, -1.0 / np.asarray(values["efficiency"]), j, [(o, 1.0), (g, -1.0)], scale)
+        product(a, k, 1.0, k, [(q, 1.0)], scale, device.nominal("V_I_min"))
+        product(a, k, -1.0 / np.asarray(values["efficiency"]), j, [(o, 1.0), (g, -1.0)], scale, device.nominal("value"))
 
     def conducts(self, device: Device) -> tuple[tuple[str, ...], ...]:
         return () if device.words.get("state") == "off" else (("IN", "OUT", "GND"),)

@@ -26,6 +26,8 @@ BOLTZMANN, CHARGE = 1.380649e-23, 1.602176634e-19
 #: every junction leaks this besides its law, so that strings of blocking junctions are not singular
 LEAK = 1e-19
 KELVIN = 273.15
+#: saturation current of a forward junction of which nothing is stated: about 0.7 V at 5 mA
+_PLAIN_I_S = 1e-14
 
 
 def thermal_voltage(temperature: Value) -> Value:
@@ -94,9 +96,11 @@ def with_junction(device: Device, default: str = "") -> Device:
             return replace(device, missing="it has no model: neither I_S, forward points, a curve nor a material")
         if known is not None and not default:
             rough = rough or f"its model is the default of {known.name}"
-        values["I_S"] = exact(source.I_S, "A")
-        values.setdefault("n", exact(source.n, "1"))
-        values.setdefault("R_S", exact(source.R_S, "ohm"))
+        # the forward branch of a zener is seldom used: a plain junction whose leakage does not disturb V_Z
+        plain = known is None and bool(default)
+        values["I_S"] = exact(_PLAIN_I_S if plain else source.I_S, "A")
+        values.setdefault("n", exact(1.0 if plain else source.n, "1"))
+        values.setdefault("R_S", exact(0.0 if plain else source.R_S, "ohm"))
     for name in ("I_S", "n"):
         if name in values and values[name].low <= 0.0:
             raise InputError(f"{device.name}: {name} must be above zero", place=device.place)

@@ -62,8 +62,10 @@ FADING_POWER = FadingPower()
 PARABOLA = Parabola()
 
 
-def product(a: Assembly, row: int, factor: Value, first: int, second: Terms, r: float) -> None:
-    """Adds factor * x_first * (sum of second) to a row; ``r`` scales x_first to the size of the second."""
+def product(a: Assembly, row: int, factor: Value, first: int, second: Terms, r: float, typical: float) -> None:
+    """Adds factor * x_first * (sum of second) to a row; ``r`` scales x_first to the size of the second, whose typical
+    value an iteration sets out from (at zero the product has no slope at all)."""
     inject = np.asarray(factor) / (2.0 * r)
-    a.branch(PARABOLA, [(row, inject)], [(first, r), *second])
-    a.branch(PARABOLA, [(row, -inject)], [(first, r), *((c, -np.asarray(k)) for c, k in second)])
+    turned = [(c, -np.asarray(k)) for c, k in second]
+    a.branch(PARABOLA, [(row, inject)], [(first, r), *second], start=typical)
+    a.branch(PARABOLA, [(row, -inject)], [(first, r), *turned], start=-typical)

@@ -87,6 +87,14 @@ def _unlimited(device: Device) -> list[tuple[str, str, float]]:
         forward = [("B", "E", _LEAST), ("B", "C", _LEAST)]
     elif device.kind == "pnp" and device.nominal("R_B", 0.0) == 0.0:
         forward = [("E", "B", _LEAST), ("C", "B", _LEAST)]
+    elif device.kind == "nmos" and device.words.get("body") != "no":
+        forward = [("S", "D", _LEAST)]
+    elif device.kind == "pmos" and device.words.get("body") != "no":
+        forward = [("D", "S", _LEAST)]
+    elif device.kind == "njfet":
+        forward = [("G", "S", _LEAST), ("G", "D", _LEAST)]
+    elif device.kind == "pjfet":
+        forward = [("S", "G", _LEAST), ("D", "G", _LEAST)]
     else:
         forward = []
     return forward
