@@ -132,10 +132,10 @@ def preferred_values(series: str, low: float, high: float) -> list[float]:
     if series not in SERIES:
         raise InputError(f"there is no series {series}", mend=f"one of {', '.join(SERIES)}")
     count = SERIES[series]
-    if count <= 24:
-        decade = [v / 10 for v in _E24[:: 24 // count]]
-    else:
-        decade = [round(100 * 10 ** (k / count)) / 100 for k in range(count)]
+    wide = count <= len(_E24)
+    decade = (
+        [v / 10 for v in _E24[:: 24 // count]] if wide else [round(100 * 10 ** (k / count)) / 100 for k in range(count)]
+    )
     first, last = math.floor(math.log10(low)), math.ceil(math.log10(high))
     values = [float(f"{v * 10.0**e:.4g}") for e in range(first, last + 1) for v in decade]
     return [v for v in values if low <= v <= high]

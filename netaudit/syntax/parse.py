@@ -199,8 +199,6 @@ def _make_same_heat(line: LogicalLine, c: Tokens) -> Statement:
         raise InputError(
             f"same-heat takes R_th, not {shown(key.key.text)}", place=key.key.place, mend="write R_th=20K/W"
         )
-    if len(c) < 3:
-        raise InputError("same-heat with a single part", place=_whole(line), mend="name every part on the heat path")
     return SameHeatStatement(tuple(words.name(line, t, "designator") for t in c[:-1]), key.value, _whole(line))
 
 
