@@ -11,6 +11,7 @@ from netaudit.audit.coverage import coverage, fitted, rating_notes, spread_note
 from netaudit.audit.expectation import expectation_tasks
 from netaudit.audit.feeding import upstream
 from netaudit.audit.lint import lint, ordered
+from netaudit.audit.package import package_devices, package_tasks
 from netaudit.audit.points import point_tasks
 from netaudit.audit.records import Audit, SampledStress, Stress
 from netaudit.audit.statistics import Plan, sample
@@ -141,6 +142,7 @@ def _audit_mode(board: Board, operation: Operation, result: ModeResult, options:
     tasks = [
         *point_tasks(operation.circuit, known),
         *expectation_tasks(board, operation.circuit, frozenset(operation.system.index_of)),
+        *package_tasks(operation.circuit, options.policy, out.stresses.append),
     ]
     for nominal, point in zip(operation.boards, result.points, strict=True):
         if point.stable is False:
@@ -152,7 +154,7 @@ def _audit_mode(board: Board, operation: Operation, result: ModeResult, options:
             out.samples += _sampled(explorer, items, options.plan, result.mode)
     _variants(operation.circuit, out, options)
     out.stresses = _worst_of(out.stresses)
-    devices = {d.name: d for d in operation.circuit.devices}
+    devices = {d.name: d for d in operation.circuit.devices} | package_devices(operation.circuit)
     for stress in _told_once(out.stresses):
         out.findings += findings_of(stress, devices[stress.device], out.units)
     return out

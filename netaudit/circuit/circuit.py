@@ -7,6 +7,7 @@ from dataclasses import dataclass, field
 
 from netaudit.devices.base import Device
 from netaudit.finding import Finding
+from netaudit.parts.part import Part
 from netaudit.place import Place
 from netaudit.quantities.quantity import Quantity
 
@@ -51,6 +52,8 @@ class Circuit:
     ambient: Quantity
     heat_paths: tuple[HeatPath, ...] = ()
     omitted: tuple[str, ...] = ()
+    #: packages of several devices by designator: their devices are called ``U1/...``
+    packages: Mapping[str, tuple[Part, Place]] = field(default_factory=dict)
 
     def device(self, name: str) -> Device:
         """The fitted device of that designator; KeyError when there is none."""

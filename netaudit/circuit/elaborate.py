@@ -8,11 +8,12 @@ from dataclasses import dataclass, field, replace
 from netaudit.circuit.blocks import Opener
 from netaudit.circuit.build import Builder, covered
 from netaudit.circuit.circuit import Board, Circuit, Expectation, HeatPath
-from netaudit.circuit.packages import opened_packages, package_statement
+from netaudit.circuit.packages import opened_packages, package_statement, packages_in
 from netaudit.circuit.raw import RawDevice, Spec, changed, sort_items
 from netaudit.devices import KINDS
 from netaudit.devices.base import Device
 from netaudit.failure import InputError
+from netaudit.parts.part import Part
 from netaudit.parts.tables import PartTable, common_table, read_table
 from netaudit.place import Place
 from netaudit.quantities.quantity import Quantity, exact
@@ -69,7 +70,9 @@ class Elaboration:
         self.builder = Builder(table, netlist.root)
         self.grounds = tuple(dict.fromkeys(s.net.text for s in netlist.statements if isinstance(s, GroundStatement)))
         self.blocks = self._blocks()
+        self.packages: dict[str, tuple[Part, Place]] = {}
         exported, packages = self._exported()
+        self.packages |= packages_in(netlist.statements, table)
         statements = opened_packages(netlist.statements, table, self.blocks)
         self.opened = Opener(self.blocks, frozenset(self.grounds)).open([*packages, *statements])
         self.raws: dict[str, RawDevice] = {}
@@ -119,6 +122,7 @@ class Elaboration:
             mapped = map_export(export, self.table)
             devices += mapped.devices
             packages += [package_statement(i, part, self.blocks) for i, part in mapped.packages]
+            self.packages |= {i.name: (part, i.place) for i, part in mapped.packages}
             self.cautions += mapped.remarks
             for finding in mapped.findings:
                 self.builder.findings[(finding.rule, finding.device or "")] = finding
@@ -257,7 +261,7 @@ class Elaboration:
                 devices.append(self._device(raw, state.specs[name]))
         paths = tuple(p for p in self.heat if any(d not in state.omitted for d in p.devices))
         omitted = tuple(n for n in self.raws if n in state.omitted)
-        return Circuit(mode.name, tuple(devices), self.nets, self.grounds, state.ambient, paths, omitted)
+        return Circuit(mode.name, tuple(devices), self.nets, self.grounds, state.ambient, paths, omitted, self.packages)
 
     def _device(self, raw: RawDevice, spec: Spec | None) -> Device:
         device = self.builder.build(raw if spec is None else replace(raw, spec=spec))

@@ -8,6 +8,7 @@ from dataclasses import replace
 from netaudit.failure import InputError
 from netaudit.parts.part import Part
 from netaudit.parts.tables import PartTable
+from netaudit.place import Place
 from netaudit.syntax.export import Instance
 from netaudit.syntax.statements import BlockStatement, DeviceStatement, Items, PinItem, Statement, Word
 
@@ -17,6 +18,18 @@ def opened_packages(
 ) -> tuple[Statement, ...]:
     """The statements, with every device that names a package turned into a placed block."""
     return tuple(_opened(s, table, blocks) if isinstance(s, DeviceStatement) else s for s in statements)
+
+
+def packages_in(statements: Iterable[Statement], table: PartTable) -> dict[str, tuple[Part, Place]]:
+    """The packages that device statements name and where, by designator."""
+    found = {}
+    for s in statements:
+        if isinstance(s, DeviceStatement):
+            word = next((k.value for k in s.items.keys if k.key.text == "part"), None)
+            part = table.get(word.text) if word is not None else None
+            if part is not None and part.block is not None:
+                found[s.designator.text] = (part, s.place)
+    return found
 
 
 def _opened(s: DeviceStatement, table: PartTable, blocks: Mapping[str, BlockStatement]) -> DeviceStatement:
