@@ -19,6 +19,8 @@ from netaudit.solve.system import System
 
 #: unknowns up to which stability is looked at
 _LARGEST_DENSE = 400
+#: no net of a board stands above this
+_LARGEST_VOLTS = 1e7
 
 
 def operate(circuit: Circuit) -> ModeResult:
@@ -57,6 +59,13 @@ class Operation:
                 f"{certificate.residual_current:.3g} A are left over on net {certificate.worst_net}"
             )
             return ModeResult(self.circuit, (), "searched", because, failure, certificate.worst_net)
+        wild = self._wild(settled.solved.pick(0))
+        if wild is not None:
+            failure = (
+                f"net {wild} would have to rise beyond {_LARGEST_VOLTS:.0e} V: a current that is forced into it has no "
+                "way back but leakage"
+            )
+            return ModeResult(self.circuit, (), "searched", because, failure, wild)
         every = [settled]
         if known.monotone and not proven and isolated(settled.solved):
             proven, because = True, ALONE
@@ -72,6 +81,12 @@ class Operation:
             proven = False
         uniqueness: Uniqueness = "proven" if proven else "searched"
         return ModeResult(self.circuit, points, uniqueness, because, runaway=followed.runaway)
+
+    def _wild(self, board: Solved) -> str | None:
+        """A net whose voltage has no physical meaning, where a source pushes its current through leakage alone."""
+        volts = {net: abs(float(board.net(net))) for net in self.circuit.nets if net in self.system.net_of}
+        worst = max(volts, key=lambda net: volts[net], default=None)
+        return worst if worst is not None and volts[worst] > _LARGEST_VOLTS else None
 
     def _point(self, settled: Settled, proven: bool) -> Point:
         return make_point(

@@ -33,9 +33,10 @@ class LogicalLine:
 
     def place(self, start: int, end: int | None = None) -> Place:
         """The place of characters start..end of the joined text."""
-        piece = self.pieces[0]
-        if len(self.pieces) > 1:
-            piece = self.pieces[bisect_right(self.pieces, start, key=_start) - 1]
+        if len(self.pieces) == 1:
+            piece = self.pieces[0]
+            return Place(self.file, piece.line, start + 1, None if end is None else end + 1, piece.source, self.chain)
+        piece = self.pieces[bisect_right(self.pieces, start, key=_start) - 1]
         column = start - piece.start + 1
         stop = None if end is None else min(end - piece.start + 1, len(piece.source) + 1)
         return Place(self.file, piece.line, column, stop, piece.source, self.chain)
@@ -51,8 +52,14 @@ def logical_lines(text: str, file: str, chain: tuple[Place, ...] = ()) -> Iterat
     pieces: list[Piece] = []
     for number, raw in enumerate(text.split("\n"), start=1):
         source = raw.removesuffix("\r")
-        if not pieces and (not source or (source[0] == "#" and source.isprintable())):
-            continue
+        if not pieces and source.isprintable():
+            # most lines: nothing to join, nothing to take off
+            if not source or source[0] == "#":
+                continue
+            if "#" not in source and "\\" not in source:
+                if not source.isspace():
+                    yield LogicalLine(source, (Piece(0, number, source),), file, chain)
+                continue
         _no_controls(source, file, number, chain)
         body = _without_comment(source, file, number, chain)
         more = body.rstrip().endswith("\\") and not _inside_quotes(body)

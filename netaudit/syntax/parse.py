@@ -31,7 +31,7 @@ from netaudit.syntax.statements import (
 )
 from netaudit.syntax.words import RESERVED as RESERVED
 
-Tokens = list[Token]
+Tokens = tuple[Token, ...]
 
 
 @dataclass(frozen=True)

@@ -11,6 +11,7 @@ from pathlib import Path
 
 from netaudit.failure import InputError
 from netaudit.place import Place
+from netaudit.quantities.text import shown
 from netaudit.syntax.export import Export
 from netaudit.syntax.lines import LogicalLine, logical_lines
 from netaudit.syntax.parse import Mark, Parser
@@ -38,6 +39,7 @@ class _Reading:
     files: dict[str, str] = field(default_factory=dict)
     only_modes: bool = False
     designators: dict[str, Place] = field(default_factory=dict)
+    named: dict[tuple[str, str], Place] = field(default_factory=dict)
 
 
 def read_netlist(path: str, *, root: str | None = None) -> Netlist:
@@ -151,6 +153,7 @@ def _mark(
                 place=mark.place,
                 mend="close the first with: end",
             )
+        _named_once(mark, reading)
         opened.append((mark, []))
     elif mark.word == "end":
         if not opened:
@@ -167,6 +170,17 @@ def _mark(
         reading.only_modes = True
     elif mark.word == "include":
         _include(mark, reading, chain, above)
+
+
+def _named_once(mark: Mark, reading: _Reading) -> None:
+    """A mode or block of each name stands once."""
+    first = reading.named.setdefault((mark.word, mark.name.text), mark.place)
+    if first is not mark.place:
+        raise InputError(
+            f"{mark.word} {shown(mark.name.text)} is defined twice (first at {first.file}:{first.line})",
+            place=mark.name.place,
+            mend="join the two" if mark.word == "mode" else "rename one of them",
+        )
 
 
 def _include(mark: Mark, reading: _Reading, chain: tuple[Place, ...], above: tuple[str, ...]) -> None:

@@ -16,6 +16,8 @@ from netaudit.syntax.grammar import grammar_text
 
 #: shapes of more tokens, or beyond this number, are parsed anew each time
 _LONGEST_SHAPE, _MOST_SHAPES = 64, 4096
+#: lines that are kept with their tokens, since boards repeat themselves (``end``, ``ground GND``, ``set ...``)
+_LONGEST_KEPT, _MOST_KEPT = 100, 1024
 
 
 class Token(NamedTuple):
@@ -31,7 +33,7 @@ class Shaped:
     """A parsed line: the grammar's name of the statement, and its tokens without the statement's own word."""
 
     rule: str
-    tokens: list[Token]
+    tokens: tuple[Token, ...]
 
 
 @dataclass
@@ -43,19 +45,28 @@ class Shapes:
     keywords: dict[str, str]
     refusal: type[Exception]
     known: dict[tuple[str, ...], tuple[str, int]] = field(default_factory=dict)
+    kept: dict[str, Shaped] = field(default_factory=dict)
 
     def read(self, text: str) -> Shaped:
         """The statement of a line."""
+        shaped = self.kept.get(text)
+        if shaped is None:
+            shaped = self._read(text)
+            if len(self.kept) < _MOST_KEPT and len(text) <= _LONGEST_KEPT:
+                self.kept[text] = shaped
+        return shaped
+
+    def _read(self, text: str) -> Shaped:
         tokens = self.scan(text)
         shape = tuple([t.type for t in tokens]) if tokens is not None and len(tokens) <= _LONGEST_SHAPE else ()
         found = self.known.get(shape)
         if found is not None and tokens is not None:
             rule, skip = found
-            return Shaped(rule, tokens[skip:])
+            return Shaped(rule, tuple(tokens[skip:]))
         parsed = _flat(self.lark.parse(text))
         if tokens is not None and shape and len(self.known) < _MOST_SHAPES:
             skip = len(tokens) - len(parsed.tokens)
-            if skip in (0, 1) and tokens[skip:] == parsed.tokens:
+            if skip in (0, 1) and tuple(tokens[skip:]) == parsed.tokens:
                 self.known[shape] = parsed.rule, skip
         return parsed
 
@@ -82,7 +93,7 @@ def _flat(tree: Any) -> Shaped:
     """The only statement of a tree, its items opened."""
     statement = tree.children[0]
     leaves = (child if hasattr(child, "start_pos") else child.children[0] for child in statement.children)
-    return Shaped(statement.data, [Token(t.type, str(t), t.start_pos) for t in leaves])
+    return Shaped(statement.data, tuple([Token(t.type, str(t), t.start_pos) for t in leaves]))
 
 
 @cache

@@ -111,3 +111,10 @@ def test_large_rail_heavy_board_runs_sparse() -> None:
     result = solve("\n".join(lines) + "\n")
     assert result.points, result.failure
     assert result.points[0].residual_current < 1e-10
+
+
+def test_a_current_forced_into_a_blocking_junction_is_refused_with_a_sentence() -> None:
+    result = solve("I1 current-source 1mA +:A -:GND\nD1 diode I_S=1pA A:GND K:A\n")
+    assert not result.points
+    assert "no way back" in result.failure
+    assert result.failure_net == "A"
