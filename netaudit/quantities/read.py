@@ -225,6 +225,8 @@ def _above_zero_kelvin(low: float, text: str, unit: str, place: Place) -> None:
 def _check_bare(word: Token) -> None:
     """A comma in a bare item: a decimal comma, or a tolerance that should stand apart."""
     first, comma, second = word.text.partition(",")
+    if comma and not second:
+        raise InputError(f"{shown(word.text)} ends with a comma", place=word.place, mend=f"write {first}"[:60])
     if comma and not re.match(r"[+-]?[0-9]+,[0-9]+[^0-9.%]*$", word.text):
         raise InputError(
             f"{shown(word.text)}: a comma joins only a key's value and its span",

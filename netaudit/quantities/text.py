@@ -21,5 +21,7 @@ class Token(Protocol):
 
 
 def shown(text: str) -> str:
-    """The text in quotes for a message, cut when it is long."""
-    return f'"{text}"' if len(text) <= 40 else f'"{text[:32]}…" ({len(text)} characters)'
+    """The text in quotes for a message (its own when it has them), cut when it is long."""
+    if len(text) > 40:
+        return f'"{text[:32]}…" ({len(text)} characters)'
+    return text if len(text) > 1 and text[0] == text[-1] == '"' else f'"{text}"'

@@ -32,6 +32,11 @@ _ANYWHERE: tuple[tuple[re.Pattern[str], str, str], ...] = (
 )
 #: the same on the one word at which the grammar stopped
 _IN_WORD: tuple[tuple[re.Pattern[str], str, str], ...] = (
+    (
+        re.compile(r"[^:=]+[:=][^:=]*([,;])[^:=,;]+[:=]"),
+        "a comma or semicolon between items",
+        "items are parted by blanks",
+    ),
     (re.compile(r"()[:=]"), "nothing stands before : or =", "write PIN:NET and key=value without blanks"),
     (
         re.compile(r"[^:=]+:[^:=]+(=)[^:=]+$"),
@@ -42,8 +47,8 @@ _IN_WORD: tuple[tuple[re.Pattern[str], str, str], ...] = (
     (re.compile(r"[^:=]+:[^:=]*(:)"), "a second : in PIN:NET", "a net name with a colon needs double quotes"),
     (re.compile(r"[^:=]+=[^:=]*(=)"), "a second = in key=value", "put the value in double quotes"),
     (re.compile(r"(?![A-Za-z_][\w.]*=)[^:=]+(=)"), "a = where a pin stands", "a pin is joined to its net by a colon"),
-    (re.compile(r'"[^"]*"([^:="])'), "text close to a closing quote", "put a blank behind the quote"),
-    (re.compile(r'[^:="]+(")'), "a quote inside a word", "the quotes go round the whole name"),
+    (re.compile(r'[^"]*"[^"]*"([^:="])'), "text close to a closing quote", "put a blank behind the quote"),
+    (re.compile(r'[^"]*[^:="](")'), "a quote inside a word", "the quotes go round the whole name"),
 )
 _LONGEST_WORD = 400
 
@@ -65,7 +70,7 @@ STATEMENTS = {
     "block": "write: block NAME PIN ... key=default",
     "expect": 'write: expect voltage NET 4.5V..5.5V mode "name"',
     "same-heat": "write: same-heat DESIGNATOR DESIGNATOR R_th=20K/W",
-    "covered": 'write: covered DESIGNATOR "why" no-current',
+    "covered": 'write: covered DESIGNATOR "why" no-current, or: ... draws PIN:PIN=80mA',
 }
 
 
@@ -121,6 +126,12 @@ def _at(line: LogicalLine, bare: str, start: int, statement: str) -> InputError:
             match = pattern.match(bare, begin, end)
             if match is not None:
                 return InputError(what, place=line.place(match.start(1), max(match.end(1), begin + 1)), mend=mend)
+    if bare[begin] == '"' and statement not in STATEMENTS and unknown_statement(statement) is None:
+        return InputError(
+            f"{shown(line.text[begin:end])} stands in quotes",
+            place=line.place(begin, end),
+            mend="only names are quoted (designators, pins, nets); kinds, values and states are not",
+        )
     return InputError(
         f"{shown(line.text[begin:end])} does not fit here", place=line.place(begin, end), mend=_shape(statement, bare)
     )

@@ -10,7 +10,7 @@ from netaudit.place import Place
 from netaudit.quantities.text import shown
 from netaudit.syntax import words
 from netaudit.syntax.lines import LogicalLine
-from netaudit.syntax.mistakes import explain, refuse_lookalikes, unknown_statement
+from netaudit.syntax.mistakes import STATEMENTS, explain, refuse_lookalikes, unknown_statement
 from netaudit.syntax.shape import Token, shapes
 from netaudit.syntax.statements import (
     AmbientStatement,
@@ -32,6 +32,8 @@ from netaudit.syntax.statements import (
 from netaudit.syntax.words import RESERVED as RESERVED
 
 Tokens = tuple[Token, ...]
+#: what begins a comment elsewhere
+_COMMENTS = ("//", "--")
 
 
 @dataclass(frozen=True)
@@ -108,7 +110,14 @@ def _make_ground(line: LogicalLine, c: Tokens) -> Statement:
 
 
 def _make_ambient(line: LogicalLine, c: Tokens) -> Statement:
-    return AmbientStatement(tuple(words.of(line, t) for t in c), _whole(line))
+    found = tuple(words.of(line, t) for t in c)
+    if len(found) == 2 and (".." not in found[1].text or ".." in found[0].text):
+        raise InputError(
+            f"{shown(found[1].text)} is not the range of an ambient temperature",
+            place=found[1].place,
+            mend=STATEMENTS["ambient"],
+        )
+    return AmbientStatement(found, _whole(line))
 
 
 def _make_omit(line: LogicalLine, c: Tokens) -> Statement:
@@ -219,6 +228,8 @@ def _make_device(line: LogicalLine, c: Tokens) -> Statement:
     designator = words.name(line, c[0], "designator", reserved=True)
     items = words.items(line, c[2:])
     if not items.pins and not designator.quoted:
+        if designator.text in _COMMENTS:
+            raise InputError(f"{designator.text} begins no comment", place=_whole(line), mend="a comment begins with #")
         meant = unknown_statement(designator.text)
         if meant is not None:
             raise InputError(

@@ -24,6 +24,7 @@ from netaudit.syntax.statements import (
     Netlist,
     PartsStatement,
     Statement,
+    Word,
 )
 
 LARGEST_FILE = 64 << 20
@@ -46,7 +47,7 @@ def read_netlist(path: str, *, root: str | None = None) -> Netlist:
     """A netlist and all that it includes.  Raises InputError with the place of whatever cannot be used."""
     reading = _Reading(project_root(path, root))
     with _collector_paused():
-        _read_file(path, path, reading, (), (str(Path(path).resolve()),))
+        _read_file(path, reading, None, (str(Path(path).resolve()),))
     return Netlist(path, reading.root, tuple(reading.statements), reading.only_modes, reading.files)
 
 
@@ -70,10 +71,12 @@ def _collector_paused() -> Iterator[None]:
             gc.enable()
 
 
-def _read_file(path: str, shown: str, reading: _Reading, chain: tuple[Place, ...], above: tuple[str, ...]) -> None:
-    data = read_bytes(path, shown, chain[-1] if chain else None)
-    reading.files[shown] = hashlib.sha256(data).hexdigest()
-    _read_text(decode(data, shown, chain), shown, reading, chain, above)
+def _read_file(path: str, reading: _Reading, include: Word | None, above: tuple[str, ...]) -> None:
+    """Reads a file, the one that the user named or one that ``include`` names."""
+    data = read_bytes(path, path, include.place if include else None)
+    chain = (*include.place.chain, replace(include.place, chain=())) if include else ()
+    reading.files[path] = hashlib.sha256(data).hexdigest()
+    _read_text(decode(data, path, chain), path, reading, chain, above)
 
 
 def read_bytes(path: str, shown: str, place: Place | None) -> bytes:
@@ -81,15 +84,16 @@ def read_bytes(path: str, shown: str, place: Place | None) -> bytes:
     try:
         if Path(path).is_dir():
             raise InputError(f"{shown} is a folder", place=place, mend="name a file in it")
-        size = Path(path).stat().st_size
-        if size > LARGEST_FILE:
-            raise InputError(
-                f"{shown} has {size >> 20} MiB", place=place, mend=f"at most {LARGEST_FILE >> 20} are read"
-            )
-        return Path(path).read_bytes()
+        with Path(path).open("rb") as file:
+            # a device or pipe has no size to ask for
+            data = file.read(LARGEST_FILE + 1)
     except (OSError, ValueError) as error:
         reason = getattr(error, "strerror", None) or str(error)
-        raise InputError(f"{shown} cannot be read: {reason}", place=place) from None
+        mend = "a name is relative to the file that it stands in" if place else "check the name"
+        raise InputError(f"{shown} cannot be read: {reason}", place=place, mend=mend) from None
+    if len(data) > LARGEST_FILE:
+        raise InputError(f"{shown} is too large", place=place, mend=f"at most {LARGEST_FILE >> 20} MiB are read")
+    return data
 
 
 def decode(data: bytes, shown: str, chain: tuple[Place, ...] = ()) -> str:
@@ -100,11 +104,11 @@ def decode(data: bytes, shown: str, chain: tuple[Place, ...] = ()) -> str:
         raise InputError("this is not UTF-8", place=Place(shown, line, chain=chain), mend="save it as UTF-8") from None
 
 
-def _read_text(text: str, shown: str, reading: _Reading, chain: tuple[Place, ...], above: tuple[str, ...]) -> None:
+def _read_text(text: str, file: str, reading: _Reading, chain: tuple[Place, ...], above: tuple[str, ...]) -> None:
     parser = Parser()
     opened: list[tuple[Mark, list[Statement]]] = []
     first = True
-    for line in logical_lines(text, shown, chain):
+    for line in logical_lines(text, file, chain):
         found = parser.parse(line, first=first)
         first = False
         if isinstance(found, Mark):
@@ -112,11 +116,13 @@ def _read_text(text: str, shown: str, reading: _Reading, chain: tuple[Place, ...
         else:
             _add(found, line, reading, opened)
     if first:
-        raise InputError("the netlist is empty", place=Place(shown, 1, chain=chain), mend="begin it with: netlist 1")
+        raise InputError("the netlist is empty", place=Place(file, 1, chain=chain), mend="begin it with: netlist 1")
     if opened:
         mark = opened[-1][0]
         raise InputError(
-            f"{mark.word} {mark.name.text!r} that begins here has no end", place=mark.place, mend="close it with: end"
+            f"{mark.word} {shown(mark.name.text)} that begins here has no end",
+            place=mark.place,
+            mend="close it with: end",
         )
 
 
@@ -149,7 +155,7 @@ def _mark(
         if opened:
             outer = opened[-1][0]
             raise InputError(
-                f"{mark.word} inside the {outer.word} {outer.name.text!r} of line {outer.place.line}",
+                f"{mark.word} inside the {outer.word} {shown(outer.name.text)} of line {outer.place.line}",
                 place=mark.place,
                 mend="close the first with: end",
             )
@@ -193,7 +199,7 @@ def _include(mark: Mark, reading: _Reading, chain: tuple[Place, ...], above: tup
         raise InputError(f"{mark.name.text} includes itself", place=mark.name.place, mend="break the cycle")
     if len(above) > 60:
         raise InputError("includes nested more than 60 deep", place=mark.name.place)
-    _read_file(path, path, reading, (*chain, replace(mark.place, chain=())), (*above, resolved))
+    _read_file(path, reading, mark.name, (*above, resolved))
 
 
 def _export(path: str, mark: Mark, reading: _Reading) -> ExportStatement:
@@ -229,7 +235,7 @@ def _closed(mark: Mark, body: list[Statement]) -> Statement:
         for s in body:
             if not isinstance(s, (SetStatement, OmitStatement, PlaceStatement, AmbientStatement)):
                 raise InputError(
-                    f"a mode holds set, omit, place and ambient only (mode {mark.name.text!r} of line {mark.place.line})",
+                    f"a mode holds set, omit, place and ambient only (mode {shown(mark.name.text)} of line {mark.place.line})",
                     place=s.place,
                     mend="is the mode's end missing above?",
                 )

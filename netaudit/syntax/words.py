@@ -8,6 +8,7 @@ from sys import intern
 
 from netaudit.failure import InputError
 from netaudit.quantities.text import shown
+from netaudit.quantities.units import FORMS, PREFIXES
 from netaudit.syntax.lines import LogicalLine
 from netaudit.syntax.mistakes import STATEMENTS
 from netaudit.syntax.shape import Token
@@ -17,6 +18,9 @@ from netaudit.syntax.statements import Items, KeyItem, PinItem, Word
 RESERVED = frozenset(STATEMENTS)
 _NAME = re.compile(r"(?:[A-Za-z0-9_+\-/~]|\.(?!\.))+")
 _SPLIT = re.compile(r'("(?:\\["\\]|[^"\\])*"|[^":=]+)([:=]|$)')
+#: what is left alone when a blank stands inside a value
+_STRAY = frozenset(PREFIXES).union(["R"], *FORMS.values())
+_JOINERS = frozenset(["..", "±", "+-", ",", "@", "%"])
 _ESCAPE = re.compile(r'\\(["\\])')
 
 
@@ -48,6 +52,8 @@ def checked(found: Word, what: str, reserved: bool = False) -> Word:
             raise InputError(f"an empty {what}", place=found.place, mend="give it a name")
         return found
     if _NAME.fullmatch(text) is None:
+        if reserved and text.startswith((";", "*", "/*", "%")):
+            raise InputError(f"{shown(text)} begins no statement", place=found.place, mend="a comment begins with #")
         raise InputError(
             f"{shown(text)} needs quotes as a {what}", place=found.place, mend=f'write "{text[:60]}" in double quotes'
         )
@@ -75,7 +81,14 @@ def pair(line: LogicalLine, token: Token) -> list[Word]:
 def key(line: LogicalLine, token: Token) -> KeyItem:
     """``key=value``."""
     left, _, right = token.text.partition("=")
-    return KeyItem(word(line, left, token.start), word(line, right, token.start + len(left) + 1))
+    item = KeyItem(word(line, left, token.start), word(line, right, token.start + len(left) + 1))
+    if right[-1] == ",":
+        raise InputError(
+            f"a blank beside the comma of {shown(token.text)}",
+            place=item.value.place,
+            mend="write key=value,tolerance without blanks",
+        )
+    return item
 
 
 def pin(line: LogicalLine, token: Token) -> PinItem:
@@ -98,11 +111,29 @@ def items(line: LogicalLine, tokens: Sequence[Token]) -> Items:
             keys.append(key(line, token))
         else:
             words.append(of(line, token))
+            _whole_value(words)
     if len(keys) > 1:
         once((k.key for k in keys), "key")
     if len(pins) > 1:
         once((p.pin for p in pins), "pin")
     return Items(tuple(words), tuple(keys), tuple(pins))
+
+
+def _whole_value(words: Sequence[Word]) -> None:
+    """InputError when the last bare item is a piece of a value that has a blank inside."""
+    last = words[-1]
+    text = last.text
+    before = words[-2].text if len(words) > 1 else ""
+    if text in _JOINERS or (text in _STRAY and before[-1:].isalnum() and before[0] in "0123456789+-±"):
+        raise InputError(
+            f"{shown(text)} stands alone: a blank inside a value",
+            place=last.place,
+            mend="write it without blanks, as in " + (f"{text}25mV" if text in ("±", "+-") else before[:40] + text),
+        )
+    if text[-1] == ",":
+        raise InputError(
+            f"a blank beside the comma of {shown(text)}", place=last.place, mend="write value,tolerance without blanks"
+        )
 
 
 def once(words: Iterable[Word], what: str) -> None:
