@@ -27,7 +27,9 @@ Objective = Callable[[Solved], Array]
 _NEGLIGIBLE = 1e-12
 #: with at most this many values all vertices are solved besides those that sensitivities point to
 _ALL_VERTICES = 6
-_ROUNDS = 4
+_ROUNDS = 8
+#: values along which one quantity is searched inside its range in each round
+_INSIDE = 4
 _ZOOM = 4
 
 
@@ -87,7 +89,7 @@ class Explorer:
         return Extreme(float(table[row, k]), self._board(row), corner, "checked")
 
     def _climb(self, objectives: Sequence[Objective]) -> None:
-        """Rounds of: best row so far, sensitivities there, the vertex they point to."""
+        """Rounds of: best row so far, sensitivities there, the vertices they point to."""
         looked: set[tuple[int, int]] = set()
         for _ in range(_ROUNDS):
             table = self._table(objectives)
@@ -97,52 +99,79 @@ class Explorer:
                 return
             looked |= {(int(best[k]), k) for k in todo}
             gradients = self._gradients(objectives, sorted({int(best[k]) for k in todo}))
-            self._solve([self._vertex(gradients[int(best[k])][k], self.rows[int(best[k])]) for k in todo])
+            rows = [row for k in todo for row in self._vertices(gradients[int(best[k])][k], int(best[k]))]
+            self._solve(rows)
 
-    def _vertex(self, gradient: Array, row: Array) -> Array:
-        return np.where(gradient > 0, self.high, np.where(gradient < 0, self.low, row))
+    def _vertices(self, gradient: Array, row: int) -> list[Array]:
+        """The vertex that a gradient points to, and rows in which only the most influential values have gone there: what
+        each value alone would gain need not hold for all together."""
+        values = self.rows[row]
+        goal = np.where(gradient > 0, self.high, np.where(gradient < 0, self.low, values))
+        moving = np.flatnonzero(goal != values)
+        order = moving[np.argsort(-np.abs(gradient[moving]))]
+        out = [goal]
+        if row:
+            count = 1
+            while count < len(order):
+                some = values.copy()
+                some[order[:count]] = goal[order[:count]]
+                out.append(some)
+                count *= 2
+        return out
 
     def _inside(self, objectives: Sequence[Objective], best: np.ndarray) -> np.ndarray:
-        """Bounded searches along values whose sensitivity at the best row points back into the box."""
+        """Bounded searches along values whose sensitivity at the best row points back into the box.
+
+        Every objective searches along its own values, one after the other; all objectives share each batch.
+        """
         best = best.copy()
         for _ in range(3):
             gradients = self._gradients(objectives, sorted(set(best.tolist())))
-            todo = [
-                (k, c) for k in range(len(objectives)) for c in self._inward(gradients[int(best[k])][k], int(best[k]))
-            ]
-            if not todo:
+            todo = {k: self._inward(gradients[int(best[k])][k], int(best[k])) for k in range(len(objectives))}
+            if not any(todo.values()):
                 return best
             before = self._table(objectives)[best, np.arange(len(objectives))]
-            for column in sorted({c for _, c in todo}):
-                self._zoom(objectives, best, [k for k, c in todo if c == column], column)
+            for turn in range(max(len(columns) for columns in todo.values())):
+                self._zoom(objectives, best, {k: cs[turn] for k, cs in todo.items() if turn < len(cs)})
             after = self._table(objectives)[best, np.arange(len(objectives))]
             if not (after > before * (1 + 1e-9 * np.sign(before))).any():
                 return best
         return best
 
     def _inward(self, gradient: Array, row: int) -> list[int]:
+        """The values whose sensitivity points into the box, the most influential ones first."""
         values = self.rows[row]
         up = (gradient > 0) & (values < self.high)
         down = (gradient < 0) & (values > self.low)
-        return [int(c) for c in np.flatnonzero(up | down)]
+        columns = np.flatnonzero(up | down)
+        return [int(c) for c in columns[np.argsort(-np.abs(gradient[columns]))][:_INSIDE]]
 
-    def _zoom(self, objectives: Sequence[Objective], best: np.ndarray, ks: Sequence[int], column: int) -> None:
-        """Successively finer grids along one value for several objectives, then the top of the parabola through the
-        best three; updates ``best`` where something is larger."""
-        left = dict.fromkeys(ks, self.low[column])
-        right = dict.fromkeys(ks, self.high[column])
+    def _zoom(self, objectives: Sequence[Objective], best: np.ndarray, column: Mapping[int, int]) -> None:
+        """Successively finer grids, each objective along its column, then the top of the parabola through the best
+        three; updates ``best`` where something is larger."""
+        left = {k: float(self.low[c]) for k, c in column.items()}
+        right = {k: float(self.high[c]) for k, c in column.items()}
         for _ in range(_ZOOM):
-            self._try(objectives, best, {k: np.linspace(left[k], right[k], 9) for k in ks}, column)
-            for k in ks:
+            self._try(objectives, best, {k: np.linspace(left[k], right[k], 9) for k in column}, column)
+            for k, c in column.items():
                 width = (right[k] - left[k]) / 8
-                at = self.rows[int(best[k])][column]
-                left[k], right[k] = max(self.low[column], at - width), min(self.high[column], at + width)
-        tops = {k: self._parabola(objectives, int(best[k]), k, column, left[k], right[k]) for k in ks}
+                at = float(self.rows[int(best[k])][c])
+                left[k], right[k] = max(float(self.low[c]), at - width), min(float(self.high[c]), at + width)
+        ends = {k: np.array([left[k], right[k]]) for k in column}
+        self._solve([self._with(int(best[k]), column[k], v) for k in column for v in ends[k]])
+        table = self._table(objectives)
+        tops = {k: self._parabola(table, int(best[k]), k, c, left[k], right[k]) for k, c in column.items()}
         self._try(objectives, best, {k: np.array([top]) for k, top in tops.items()}, column)
 
-    def _try(self, objectives: Sequence[Objective], best: np.ndarray, grids: dict[int, Array], column: int) -> None:
-        """Solves the rows with these values in one column and takes over what is better."""
-        wanted = {k: [self._with(int(best[k]), column, g) for g in grid] for k, grid in grids.items()}
+    def _try(
+        self,
+        objectives: Sequence[Objective],
+        best: np.ndarray,
+        grids: Mapping[int, Array],
+        column: Mapping[int, int],
+    ) -> None:
+        """Solves the rows with these values, each objective in its column, and takes over what is better."""
+        wanted = {k: [self._with(int(best[k]), column[k], g) for g in grid] for k, grid in grids.items()}
         self._solve([row for rows in wanted.values() for row in rows])
         table = self._table(objectives)
         for k, rows in wanted.items():
@@ -150,16 +179,12 @@ class Explorer:
                 if table[row, k] > table[best[k], k]:
                     best[k] = row
 
-    def _parabola(
-        self, objectives: Sequence[Objective], row: int, k: int, column: int, left: float, right: float
-    ) -> float:
+    def _parabola(self, table: Array, row: int, k: int, column: int, left: float, right: float) -> float:
         """Where the parabola through the best row and its two neighbours has its top (the row itself if none)."""
         at = float(self.rows[row][column])
         ends = [self._with(row, column, left), self._with(row, column, right)]
-        self._solve(ends)
         if not left < at < right or any(r.tobytes() not in self.known for r in ends):
             return at
-        table = self._table(objectives)
         fl, fr = (table[self.known[r.tobytes()], k] for r in ends)
         dl, dr = (fl - table[row, k]) / (left - at), (fr - table[row, k]) / (right - at)
         curvature = (dr - dl) / (right - left)

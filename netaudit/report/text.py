@@ -59,7 +59,9 @@ def lint_text(board: Board, findings: Sequence[Finding], failed: bool, style: St
     lines = [*_headline(board, failed, style, "lint"), ""]
     lines += findings_text(findings, style, notes)
     said = "Structure only: nothing was solved, no rating was looked at."
-    lines += [_counted(findings), "", *wrapped(said, style.width, "")]
+    lines += [_counted(findings), ""]
+    lines += [line for caution in board.cautions for line in wrapped(caution, style.width, "")]
+    lines += wrapped(said, style.width, "")
     return "\n".join(lines) + "\n"
 
 
