@@ -12,7 +12,20 @@ from types import MappingProxyType
 
 #: SI prefix to decimal exponent; both code points of the micro sign
 PREFIXES = MappingProxyType(
-    {"a": -18, "f": -15, "p": -12, "n": -9, "u": -6, "µ": -6, "μ": -6, "m": -3, "k": 3, "M": 6, "G": 9, "T": 12}
+    {
+        "a": -18,
+        "f": -15,
+        "p": -12,
+        "n": -9,
+        "u": -6,
+        "\u00b5": -6,
+        "\u03bc": -6,
+        "m": -3,
+        "k": 3,
+        "M": 6,
+        "G": 9,
+        "T": 12,
+    }
 )
 #: the prefix printed for a decimal exponent
 PREFIX_OF = MappingProxyType({v: k for k, v in PREFIXES.items() if k.isascii()} | {0: ""})
@@ -38,7 +51,7 @@ _UNITS = (
     Unit("V", "a voltage", "12V", ("V",)),
     Unit("A", "a current", "20mA", ("A",)),
     Unit("W", "a power", "250mW", ("W",)),
-    Unit("ohm", "a resistance", "4.7kohm", ("ohm", "Ω", "Ω")),
+    Unit("ohm", "a resistance", "4.7kohm", ("ohm", "\u03a9", "\u2126")),
     Unit("F", "a capacitance", "10uF", ("F",)),
     Unit("H", "an inductance", "10uH", ("H",)),
     Unit("S", "a conductance", "1mS", ("S",)),
