@@ -91,7 +91,8 @@ def percent_span(nominal: float, below: float, above: float, text: str, place: P
             mend="write both ends, as in -50%..+200%",
         )
     ends = nominal * (100.0 + below) / 100.0, nominal * (100.0 + above) / 100.0
-    return _ordered(min(ends), max(ends), text, place)
+    # a product may round to the other side of the nominal when the percentage is next to nothing
+    return _ordered(min(*ends, nominal), max(*ends, nominal), text, place)
 
 
 def _ordered(low: float, high: float, text: str, place: Place) -> tuple[float, float]:

@@ -76,8 +76,8 @@ def _percent(q: Quantity) -> str | None:
     size = abs(q.nominal)
     near, far = (q.high, q.low) if q.nominal < 0.0 else (q.low, q.high)
     # the same arithmetic as reading: nominal (100 + p) / 100
-    below = _preimage(lambda p: size * (100.0 - p) / 100.0, abs(near), rising=False)
-    above = _preimage(lambda p: size * (100.0 + p) / 100.0, abs(far), rising=True)
+    below = _preimage(lambda p: min(size * (100.0 - p) / 100.0, size), abs(near), rising=False)
+    above = _preimage(lambda p: max(size * (100.0 + p) / 100.0, size), abs(far), rising=True)
     if below is None or above is None or (q.low < 0.0 < q.high):
         return None
     both = max(below[0], above[0]), min(below[1], above[1])

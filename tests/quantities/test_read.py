@@ -166,6 +166,13 @@ def test_a_new_nominal_keeps_a_percentage_only() -> None:
     assert (flipped.low, flipped.high) == (-6.0, -4.5)
 
 
+def test_no_percentage_at_all_leaves_the_nominal() -> None:
+    # 100 x / 100 is not x for every double
+    for k in range(1, 2000):
+        q = read_quantity(f"{k / 7!r}V,0%", "V", HERE)
+        assert q.low == q.nominal == q.high
+
+
 @given(
     st.floats(-1e9, 1e9, allow_nan=False).filter(lambda x: x == 0 or abs(x) > 1e-200),
     st.floats(0, 100),
