@@ -20,6 +20,10 @@ BOLTZMANN, CHARGE = 1.380649e-23, 1.602176634e-19
 #: a fit whose largest deviation is beyond these is no exponential: the curve itself is kept
 LARGEST_ERROR, LARGEST_SHARE = 0.05, 0.05
 _LEAST_POINTS = 4
+#: volts around the origin at which a junction carries next to nothing
+_NEAR = 0.05
+#: a forward branch does not reach further than this, V
+_LONGEST = 5.0
 
 
 @dataclass(frozen=True)
@@ -76,6 +80,9 @@ def _one(curve: Curve, meter: Meter, temperature: float) -> Fit:
     order = np.argsort(curve.v, kind="stable")
     v, i = curve.v[order], curve.i[order]
     v, i, left_out = _usable(v, i, meter)
+    if _turned(v, i, meter, t):
+        v, i = -v[::-1], -i[::-1]
+        left_out = (*left_out, "no points: the leads were reversed, voltage and current are taken with the other sign")
     if len(v) < 2:
         raise InputError("fewer than two usable points are left", mend="check the limits of the instrument")
     floor = _noise(v, i, meter)
@@ -95,6 +102,15 @@ def _one(curve: Curve, meter: Meter, temperature: float) -> Fit:
         True, fit.I_S, fit.n, fit.R_S, t, fit.errors, leakage, breakdown, None, None, fit.worst, fit.worst_at,
         _single(points), left_out,
     )  # fmt: skip
+
+
+def _turned(v: Array, i: Array, meter: Meter, t: float) -> bool:
+    """Whether the leads were the other way round: all of a junction's forward branch at negative volts."""
+    if (i > 0).sum() >= _LEAST_POINTS or ((v < 0) & (i < 0)).sum() < _LEAST_POINTS or float(v.min()) < -_LONGEST:
+        return False
+    back = (v < 0) & (i < 0)
+    fit = _forward(-v[back][::-1], -i[back][::-1], meter, t)
+    return fit is not None and fit.n < 5.0 and _close(fit, -v[back][::-1], -i[back][::-1])
 
 
 def _single(points: Sequence[tuple[float, float]]) -> tuple[tuple[float, float], ...]:
@@ -134,11 +150,16 @@ def _usable(v: Array, i: Array, meter: Meter) -> tuple[Array, Array, tuple[str, 
 
 
 def _noise(v: Array, i: Array, meter: Meter) -> float:
-    """The offset noise: as stated, else the largest current of the wrong sign between the origin and the first volts."""
+    """The offset noise: as stated, else the largest current of the wrong sign, or that which stands near the origin
+    where a junction carries next to nothing (and far below the largest current)."""
     if meter.amperes > 0:
         return meter.amperes
     wrong = (v > 0) & (i < 0)
-    return float(np.max(-i[wrong])) if wrong.any() else 0.0
+    noise = float(np.max(-i[wrong])) if wrong.any() else 0.0
+    near = np.abs(v) < _NEAR
+    if near.sum() >= 2 and (level := float(np.median(np.abs(i[near])))) < 1e-3 * float(np.max(np.abs(i))):
+        noise = max(noise, level)
+    return noise
 
 
 def _thermal(t: float) -> float:

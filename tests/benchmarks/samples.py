@@ -16,7 +16,7 @@ import netaudit
 from netaudit.audit.worst import Explorer
 from netaudit.solve.operate import Operation
 from netaudit.solve.sensitivity import Variable, assign, variables
-from netaudit.solve.settle import Job
+from netaudit.solve.settle import Job, Settled
 
 SAMPLES, LOOPED = 10_000, 200
 
@@ -75,14 +75,14 @@ def main() -> None:
     low, high = (np.array([getattr(v.quantity, side) for v in spans]) for side in ("low", "high"))
     values = low + (high - low) * rng.random((SAMPLES, len(spans)))
 
-    def ours() -> object:
+    def ours() -> Settled:
         overrides, _ = assign(spans, values, 25.0)
         start = solver.job({}, None, SAMPLES)
         u0 = np.repeat(operation.boards[0].u, SAMPLES, axis=0)
         return solver.settle(Job(overrides, 25.0, SAMPLES, u0, start.t0))
 
     rate = SAMPLES / timed(ours)
-    settled = solver.settle(Job(assign(spans, values, 25.0)[0], 25.0, SAMPLES, np.repeat(operation.boards[0].u, SAMPLES, axis=0), solver.job({}, None, SAMPLES).t0))
+    settled = ours()
     part = values[:LOOPED]
     warm = LOOPED / timed(lambda: baseline(operation, spans, part, False), 1)
     cold = LOOPED / 4 / timed(lambda: baseline(operation, spans, part[: LOOPED // 4], True), 1)
@@ -92,12 +92,10 @@ def main() -> None:
     jac = system.jacobian(settled.solved.num, settled.solved.num.branches.value(settled.solved.u)[1])
     right = np.ones((SAMPLES, system.n, 1))
     floor = SAMPLES / (timed(lambda: np.linalg.solve(jac, right)) * iterations)
-    print(f"samples: {rate:,.0f}/s; over warm root {rate / warm:.0f}, over cold LM {rate / cold:.0f}, "
-          f"over {iterations} batched LAPACK solves {rate / floor:.1f}; largest difference {error:.1e}")
-
-    def once() -> object:
-        fresh = Operation(netaudit.loads(board()).board.circuits[0])
-        return fresh.solver.settle(fresh.solver.job())
+    print(
+        f"samples: {rate:,.0f}/s; over warm root {rate / warm:.0f}, over cold LM {rate / cold:.0f}, "
+        f"over {iterations} batched LAPACK solves {rate / floor:.1f}; largest difference {error:.1e}"
+    )
 
     def cold_solve() -> object:
         return solver.settle(solver.job())
@@ -107,7 +105,6 @@ def main() -> None:
         return Explorer(solver, operation.boards[0]).extremes([lambda b, n=n: b.view(n).power for n in names])
 
     print(f"worst case of all powers: {timed(worst, 2) / timed(cold_solve):.0f} cold solves")
-    once()
 
 
 if __name__ == "__main__":

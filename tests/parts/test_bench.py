@@ -128,3 +128,18 @@ def test_files_that_are_no_curve(text: str, words: str) -> None:
 def test_two_currents_at_one_voltage() -> None:
     with pytest.raises(InputError, match="two currents"):
         fit_curves([Curve(np.array([0.5, 0.5, 0.6]), np.array([1e-3, 5e-3, 1e-2]), 25.0, (1, 2, 3))])
+
+
+def test_reversed_leads_are_noticed() -> None:
+    c = synthetic(1e-12, 1.2, 1.0, 0)
+    fit = fit_curves([Curve(-c.v, -c.i, 25.0, c.lines)])
+    assert fit.n == pytest.approx(1.2, rel=0.02)
+    assert "reversed" in fit.left_out[0]
+
+
+def test_an_offset_that_stands_at_the_origin_is_left_out() -> None:
+    v = np.linspace(0.0, 0.75, 76)
+    i = 1e-12 * np.expm1(v / (1.2 * 0.025692579)) + 5e-8
+    fit = fit_curves([Curve(v, i, 25.0, tuple(range(76)))])
+    assert fit.n == pytest.approx(1.2, rel=0.02)
+    assert "offset noise" in fit.left_out[0]

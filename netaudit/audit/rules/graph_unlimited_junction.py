@@ -1,8 +1,9 @@
 """A forward junction across stiff supplies with nothing that limits its current.
 
 The difference of two stiff nets (supplies without ``R`` and without ``limit``, and shorts) forward biases a junction by
-more than 0.3 V a junction in the string, or a zener beyond its V_Z, and no resistance stands in the path.  The
-exponential law would ask for a current that no part survives, so such a mode is not solved to that figure but named here.
+more than the string takes at 100 mA, and no resistance stands in the path (a junction's own series resistance is no
+limit that anybody chose).  The exponential law would ask for a current that no part survives, so such a mode is not
+solved to that figure but named here.
 
     fails:  PS1 supply 12V +:A -:GND  and  D1 led part=L A:A K:GND
     passes: a resistor in series
@@ -10,6 +11,7 @@ exponential law would ask for a current that no part survives, so such a mode is
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterable
 
 from netaudit.audit.rule import Rule, Site, about, listed
@@ -17,8 +19,8 @@ from netaudit.circuit.graph import Graph, is_stiff
 from netaudit.devices.base import Device
 from netaudit.finding import Finding
 
-#: forward voltage a junction that does not yet count as conduction without limit
-_LEAST = 0.3
+#: forward voltage of a junction below which nothing is said, the current that counts as without limit, and kT/q at 25 degC
+_LEAST, _CURRENT, _V_T = 0.1, 0.1, 0.0256926
 _LONGEST = 24
 
 
@@ -74,30 +76,36 @@ def stiff_voltages(graph: Graph) -> dict[str, tuple[str, float]]:
 
 
 def _unlimited(device: Device) -> list[tuple[str, str, float]]:
-    """Directions in which the device conducts without limit once more than the given voltage lies across it."""
-    if device.missing or device.points or device.nominal("R_S", 0.0) > 0.0:
-        forward: list[tuple[str, str, float]] = []
-    elif device.kind in ("diode", "led", "zener") or (device.kind == "suppressor" and "A" in device.pins):
-        forward = [("A", "K", _LEAST * max(1.0, device.nominal("n", 1.0) / 2))]
-    elif device.kind == "bridge":
-        forward = [(a, b, _LEAST) for a, b in (("AC1", "+"), ("AC2", "+"), ("-", "AC1"), ("-", "AC2"))]
-    elif device.kind == "optocoupler":
-        forward = [("A", "K", _LEAST)]
-    elif device.kind == "npn" and device.nominal("R_B", 0.0) == 0.0:
-        forward = [("B", "E", _LEAST), ("B", "C", _LEAST)]
-    elif device.kind == "pnp" and device.nominal("R_B", 0.0) == 0.0:
-        forward = [("E", "B", _LEAST), ("C", "B", _LEAST)]
-    elif device.kind == "nmos" and device.words.get("body") != "no":
-        forward = [("S", "D", _LEAST)]
-    elif device.kind == "pmos" and device.words.get("body") != "no":
-        forward = [("D", "S", _LEAST)]
-    elif device.kind == "njfet":
-        forward = [("G", "S", _LEAST), ("G", "D", _LEAST)]
-    elif device.kind == "pjfet":
-        forward = [("S", "G", _LEAST), ("D", "G", _LEAST)]
-    else:
-        forward = []
-    return forward
+    """Directions in which the device conducts without limit once more than the given voltage lies across it.
+
+    A junction's own series resistance is no limit that anybody chose, so it does not count.
+    """
+    if device.missing or device.points:
+        return []
+    drop = _drop(device)
+    kind, no_body = device.kind, device.words.get("body") == "no"
+    pairs: dict[str, tuple[tuple[str, str], ...]] = {
+        "diode": (("A", "K"),),
+        "led": (("A", "K"),),
+        "zener": (("A", "K"),),
+        "suppressor": (("A", "K"),) if "A" in device.pins else (),
+        "optocoupler": (("A", "K"),),
+        "bridge": (("AC1", "+"), ("AC2", "+"), ("-", "AC1"), ("-", "AC2")),
+        "npn": (("B", "E"), ("B", "C")),
+        "pnp": (("E", "B"), ("C", "B")),
+        "nmos": () if no_body else (("S", "D"),),
+        "pmos": () if no_body else (("D", "S"),),
+        "njfet": (("G", "S"), ("G", "D")),
+        "pjfet": (("S", "G"), ("D", "G")),
+    }
+    limited = device.nominal("R_B", 0.0) > 0.0
+    return [] if limited else [(a, b, drop) for a, b in pairs.get(kind, ())]
+
+
+def _drop(device: Device) -> float:
+    """The voltage of the bare junction at 100 mA: n V_T ln(0.1 A / I_S)."""
+    i_s, n = device.nominal("I_S", 1e-14), device.nominal("n", 1.0)
+    return max(_LEAST, n * _V_T * math.log(_CURRENT / i_s)) if 0 < i_s < _CURRENT else _LEAST
 
 
 def _strings(
