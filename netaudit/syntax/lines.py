@@ -56,7 +56,7 @@ def logical_lines(text: str, file: str, chain: tuple[Place, ...] = ()) -> Iterat
             # most lines: nothing to join, nothing to take off
             if not source or source[0] == "#":
                 continue
-            if "#" not in source and "\\" not in source:
+            if "#" not in source and "\\" not in source and len(source) <= LONGEST:
                 if not source.isspace():
                     yield LogicalLine(source, (Piece(0, number, source),), file, chain)
                 continue

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import gc
 import hashlib
+import os
 from collections.abc import Iterator
 from contextlib import contextmanager
 from dataclasses import dataclass, field, replace
@@ -47,7 +48,7 @@ def read_netlist(path: str, *, root: str | None = None) -> Netlist:
     """A netlist and all that it includes.  Raises InputError with the place of whatever cannot be used."""
     reading = _Reading(project_root(path, root))
     with _collector_paused():
-        _read_file(path, reading, None, (str(Path(path).resolve()),))
+        _read_file(path, reading, None, (os.path.realpath(path),))
     return Netlist(path, reading.root, tuple(reading.statements), reading.only_modes, reading.files)
 
 
@@ -81,18 +82,19 @@ def _read_file(path: str, reading: _Reading, include: Word | None, above: tuple[
 
 def read_bytes(path: str, shown: str, place: Place | None) -> bytes:
     """The content of a file; InputError when there is none, it is a folder, or it is too large."""
+    named = shown if len(shown) <= 300 else f"{shown[:300]}…"
     try:
         if Path(path).is_dir():
-            raise InputError(f"{shown} is a folder", place=place, mend="name a file in it")
+            raise InputError(f"{named} is a folder", place=place, mend="name a file in it")
         with Path(path).open("rb") as file:
             # a device or pipe has no size to ask for
             data = file.read(LARGEST_FILE + 1)
     except (OSError, ValueError) as error:
         reason = getattr(error, "strerror", None) or str(error)
         mend = "a name is relative to the file that it stands in" if place else "check the name"
-        raise InputError(f"{shown} cannot be read: {reason}", place=place, mend=mend) from None
+        raise InputError(f"{named} cannot be read: {reason}", place=place, mend=mend) from None
     if len(data) > LARGEST_FILE:
-        raise InputError(f"{shown} is too large", place=place, mend=f"at most {LARGEST_FILE >> 20} MiB are read")
+        raise InputError(f"{named} is too large", place=place, mend=f"at most {LARGEST_FILE >> 20} MiB are read")
     return data
 
 
@@ -194,7 +196,7 @@ def _include(mark: Mark, reading: _Reading, chain: tuple[Place, ...], above: tup
     if path.lower().endswith(_EXPORTS):
         reading.statements.append(_export(path, mark, reading))
         return
-    resolved = str(Path(path).resolve())
+    resolved = os.path.realpath(path)
     if resolved in above:
         raise InputError(f"{mark.name.text} includes itself", place=mark.name.place, mend="break the cycle")
     if len(above) > 60:

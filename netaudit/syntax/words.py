@@ -20,7 +20,7 @@ _NAME = re.compile(r"(?:[A-Za-z0-9_+\-/~]|\.(?!\.))+")
 _SPLIT = re.compile(r'("(?:\\["\\]|[^"\\])*"|[^":=]+)([:=]|$)')
 #: what is left alone when a blank stands inside a value
 _STRAY = frozenset(PREFIXES).union(["R"], *FORMS.values())
-_JOINERS = frozenset(["..", "±", "+-", ",", "@", "%"])
+_JOINERS = frozenset(["..", "±", "+-", "@", "%"])
 _ESCAPE = re.compile(r'\\(["\\])')
 
 

@@ -5,7 +5,7 @@ from __future__ import annotations
 import time
 
 import pytest
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from netaudit.failure import InputError
@@ -33,6 +33,7 @@ def test_numbers(text: str, unit: str, value: float) -> None:
     assert read_number(text, unit, HERE) == value
 
 
+@settings(derandomize=True, deadline=None)
 @given(st.integers(0, 10**9), st.integers(0, 8), st.sampled_from(sorted(PREFIXES)))
 def test_a_prefix_is_the_same_as_its_exponent_and_rounded_once(digits: int, places: int, prefix: str) -> None:
     whole, part = divmod(digits, 10**places)
@@ -97,6 +98,7 @@ def test_forms_are_read_as_their_unit_and_as_no_other_dimension() -> None:
     assert all(UNITS[u].example for u in UNITS)
 
 
+@settings(derandomize=True, deadline=None)
 @given(st.text(max_size=20), st.sampled_from(sorted(UNITS)))
 def test_any_text_is_a_number_or_an_input_error(text: str, unit: str) -> None:
     said = "\n"

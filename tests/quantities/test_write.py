@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import pytest
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from netaudit.place import Place
@@ -24,12 +24,14 @@ def physical(x: float, unit: str) -> float:
     return abs(x) if unit == "degC" else x
 
 
+@settings(derandomize=True, deadline=None)
 @given(NUMBER, UNIT)
 def test_a_number_prints_and_reads_back(x: float, unit: str) -> None:
     x = physical(x, unit)
     assert read_number(write_number(x, unit), unit, HERE) == x
 
 
+@settings(derandomize=True, deadline=None)
 @given(MODERATE, MODERATE, MODERATE, UNIT)
 def test_a_range_prints_and_reads_back(a: float, b: float, c: float, unit: str) -> None:
     low, nominal, high = sorted(physical(x, unit) for x in (a, b, c))
@@ -37,6 +39,7 @@ def test_a_range_prints_and_reads_back(a: float, b: float, c: float, unit: str) 
     assert read_quantity(write_quantity(q), unit, HERE) == q
 
 
+@settings(derandomize=True, deadline=None)
 @given(MODERATE, SHARE, st.floats(0, 1000), st.sampled_from(sorted(set(UNITS) - {"degC"})))
 def test_a_percentage_prints_and_reads_back(x: float, below: float, above: float, unit: str) -> None:
     number = write_number(x, unit)
@@ -46,6 +49,7 @@ def test_a_percentage_prints_and_reads_back(x: float, below: float, above: float
         assert read_quantity(text, unit, HERE) == q
 
 
+@settings(derandomize=True, deadline=None)
 @given(MODERATE, st.floats(0, 1e6).filter(lambda x: x == 0 or x > 1e-12), UNIT)
 def test_an_absolute_tolerance_prints_and_reads_back(x: float, half: float, unit: str) -> None:
     x = physical(x, unit) + (1e7 if unit == "degC" else 0.0)
@@ -94,6 +98,7 @@ def test_digits_are_asked_for() -> None:
     assert engineering(123.0, "V", 2) == "120 V"
 
 
+@settings(derandomize=True, deadline=None)
 @given(st.floats(1e-17, 1e14), st.sampled_from(["V", "A", "W", "ohm", "F"]), st.integers(3, 9))
 def test_what_people_see_is_the_value_to_its_digits(x: float, unit: str, digits: int) -> None:
     number, form = engineering(x, unit, digits).split(" ")

@@ -52,7 +52,11 @@ def test_bytes_that_are_no_netlist(tmp_path: Path, data: bytes, words: str) -> N
 def test_missing_files_and_folders(tmp_path: Path) -> None:
     assert "nothing.netlist cannot be read" in refused(str(tmp_path / "nothing.netlist"))
     assert "is a folder" in refused(str(tmp_path))
-    assert "cannot be read" in refused("a\0b")
+    assert "cannot be read" in refused("a" * 5000)
+    assert "no name of a file" in refused("a\0b")
+    os.symlink("loop", tmp_path / "loop")
+    assert "cannot be read" in refused(write(tmp_path / "a.netlist", 'netlist 1\ninclude "loop"\n'))
+    assert "cannot be read" in refused(write(tmp_path / "a.netlist", f'netlist 1\ninclude "{"b" * 5000}"\n'))
 
 
 def test_included_statements_stand_in_their_place_with_hashes(tmp_path: Path) -> None:

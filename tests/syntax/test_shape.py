@@ -35,7 +35,7 @@ def by_lark_alone(text: str) -> Shaped | None:
 
 
 @given(st.lists(LINE, min_size=1, max_size=12))
-@settings(max_examples=150, deadline=None)
+@settings(max_examples=150, deadline=None, derandomize=True)
 def test_remembered_shapes_agree_with_the_grammar(lines: list[str]) -> None:
     fresh = shapes()
     warm = Shapes(fresh.lark, fresh.scanner, fresh.keywords, fresh.refusal)
