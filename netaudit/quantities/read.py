@@ -1,8 +1,8 @@
 """Text to quantities: what a statement's items and a part table's cells mean once their unit is known.
 
 Every function takes the text, the canonical unit (``netaudit.quantities.units``) and the place for its error, and
-raises InputError.  Value codes (IEC 60062) are read wherever the unit is ohm, F or H; ``code=True`` also allows them where the
-unit written decides what is meant (a load of A, W or ohm).
+raises InputError.  Value codes (IEC 60062) are read wherever the unit is ohm, F or H; ``code=True`` also allows them
+where the unit written decides what is meant (a load of A, W or ohm).
 """
 
 from __future__ import annotations

@@ -237,7 +237,7 @@ def _closed(mark: Mark, body: list[Statement]) -> Statement:
         for s in body:
             if not isinstance(s, (SetStatement, OmitStatement, PlaceStatement, AmbientStatement)):
                 raise InputError(
-                    f"a mode holds set, omit, place and ambient only (mode {shown(mark.name.text)} of line {mark.place.line})",
+                    f"mode {shown(mark.name.text)} of line {mark.place.line}: it holds set, omit, place and ambient only",
                     place=s.place,
                     mend="is the mode's end missing above?",
                 )

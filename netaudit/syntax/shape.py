@@ -1,8 +1,8 @@
 """The grammar at speed: a line's shape (the types of its tokens) is parsed once, and its like are taken for granted.
 
 An LALR parser sees token types only, so two lines of the same types have the same tree.  The types are found with the
-grammar's own terminals in lark's order of preference; a shape counts as known only after lark has read a line of it with
-the same tokens.  Whatever is not known goes to lark, and every error comes from it.
+grammar's own terminals in lark's order of preference; a shape counts as known only after lark has read a line of it
+with the same tokens.  Whatever is not known goes to lark, and every error comes from it.
 """
 
 from __future__ import annotations
