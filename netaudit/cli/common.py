@@ -7,7 +7,7 @@ import contextlib
 import io
 import os
 import sys
-from collections.abc import Callable
+from collections.abc import Callable, Iterable, Sequence
 from typing import Any
 
 from netaudit.failure import InputError, printable
@@ -46,6 +46,16 @@ def add_fail_on(command: argparse.ArgumentParser) -> None:
     command.add_argument("--notes", action="store_true", help="show every note in full")
 
 
+def _shown(files: Sequence[str]) -> Iterable[str]:
+    """The files, with a progress bar on stderr where that is a terminal and there are several."""
+    if len(files) < 2 or not sys.stderr.isatty():
+        return files
+    from rich.console import Console
+    from rich.progress import track
+
+    return track(files, description="boards", console=Console(stderr=True), transient=True)
+
+
 def each(
     options: argparse.Namespace, kind: str, work: Callable[[LoadedBoard, Style], tuple[int, dict[str, Any] | None, str]]
 ) -> int:
@@ -58,7 +68,7 @@ def each(
     records: list[dict[str, Any]] = []
     texts: list[str] = []
     status = 0
-    for path in options.files:
+    for path in _shown(options.files):
         try:
             result, record, text = work(LoadedBoard.from_file(path, options.root, options.changes), style)
         except InputError as error:
