@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Callable, Iterable
 from dataclasses import dataclass, field
-from typing import Literal
+from typing import Literal, TypedDict
 
 from netaudit.circuit.circuit import Board
 from netaudit.circuit.graph import Graph
@@ -33,8 +33,16 @@ class Rule:
     find: Callable[[Site], Iterable[Finding]] | None = field(default=None, compare=False)
 
 
-def about(device: Device) -> dict[str, str | int]:
+class About(TypedDict):
     """The fields by which a finding points at a device."""
+
+    device: str
+    file: str
+    line: int
+
+
+def about(device: Device) -> About:
+    """Where a finding about this device points."""
     return {"device": device.name, "file": device.place.file, "line": device.place.line}
 
 

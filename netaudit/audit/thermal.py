@@ -56,7 +56,7 @@ def thermal_findings(operation: Operation, explorer: Explorer, result: ModeResul
                 unit="1",
                 mode=result.mode,
                 corner=corner,
-                **about(device),  # type: ignore[arg-type]  # the mapping's keys are the field names
+                **about(device),
             )
 
 
@@ -88,5 +88,5 @@ def _runaway(operation: Operation, names: tuple[str, ...], corner: Mapping[str, 
         unit="1",
         mode=operation.circuit.mode,
         corner=corner,
-        **about(device),  # type: ignore[arg-type]  # the mapping's keys are the field names
+        **about(device),
     )

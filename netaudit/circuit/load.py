@@ -2,15 +2,14 @@
 
 from __future__ import annotations
 
-import gc
-from collections.abc import Iterator, Sequence
-from contextlib import contextmanager
+from collections.abc import Sequence
 from dataclasses import replace
 
 from netaudit.circuit.circuit import Board
 from netaudit.circuit.elaborate import elaborate
 from netaudit.failure import InputError
 from netaudit.place import Place
+from netaudit.syntax.collector import collector_paused
 from netaudit.syntax.lines import logical_lines
 from netaudit.syntax.parse import Parser
 from netaudit.syntax.reader import read_netlist, read_netlist_text
@@ -22,20 +21,8 @@ def load_board(path: str, root: str | None = None, changes: Sequence[str] = ()) 
 
     ``changes`` are settings such as ``R1=1k`` or ``S1=open`` that hold in every mode, after the modes' own.
     """
-    with uncollected():
+    with collector_paused():
         return elaborate(with_changes(read_netlist(path, root=root), changes))
-
-
-@contextmanager
-def uncollected() -> Iterator[None]:
-    """Pauses the collector: reading makes many small objects and no cycles, which it would only walk again and again."""
-    running = gc.isenabled()
-    gc.disable()
-    try:
-        yield
-    finally:
-        if running:
-            gc.enable()
 
 
 def load_text(text: str, name: str = "netlist", changes: Sequence[str] = ()) -> Board:

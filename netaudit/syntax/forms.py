@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import gc
 import re
 from collections.abc import Iterator
 from dataclasses import dataclass
@@ -11,6 +10,7 @@ from typing import Any
 
 from netaudit.failure import InputError
 from netaudit.place import Place
+from netaudit.syntax.collector import collector_paused
 from netaudit.syntax.grammar import grammar_text
 
 _PIECES = re.compile(r'"[^"]*"|[^\s()"]+')
@@ -44,16 +44,11 @@ def read_forms(text: str, file: str) -> Form:
     of what stands outside."""
     from lark.exceptions import UnexpectedInput
 
-    running = gc.isenabled()
-    # millions of small objects and no cycles: the collector would only walk them again and again
-    gc.disable()
     try:
-        return _parser().parse(text)  # type: ignore[no-any-return]  # lark types a tree; the transformer makes a Form
+        with collector_paused():
+            return _parser().parse(text)  # type: ignore[no-any-return]  # lark types a tree; the transformer makes a Form
     except UnexpectedInput as error:
         raise _unbalanced(text, file, error) from None
-    finally:
-        if running:
-            gc.enable()
 
 
 @cache

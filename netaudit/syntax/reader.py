@@ -2,17 +2,15 @@
 
 from __future__ import annotations
 
-import gc
 import hashlib
 import os
-from collections.abc import Iterator
-from contextlib import contextmanager
 from dataclasses import dataclass, field, replace
 from pathlib import Path
 
 from netaudit.failure import InputError
 from netaudit.place import Place
 from netaudit.quantities.text import shown
+from netaudit.syntax.collector import collector_paused
 from netaudit.syntax.export import Export
 from netaudit.syntax.lines import LogicalLine, logical_lines
 from netaudit.syntax.parse import Mark, Parser
@@ -47,7 +45,7 @@ class _Reading:
 def read_netlist(path: str, *, root: str | None = None) -> Netlist:
     """A netlist and all that it includes.  Raises InputError with the place of whatever cannot be used."""
     reading = _Reading(project_root(path, root))
-    with _collector_paused():
+    with collector_paused():
         _read_file(path, reading, None, (os.path.realpath(path),))
     return Netlist(path, reading.root, tuple(reading.statements), reading.only_modes, reading.files)
 
@@ -55,21 +53,9 @@ def read_netlist(path: str, *, root: str | None = None) -> Netlist:
 def read_netlist_text(text: str, name: str = "netlist") -> Netlist:
     """The same for a text that stands nowhere; its includes are looked for from the current folder."""
     reading = _Reading(project_root(name))
-    with _collector_paused():
+    with collector_paused():
         _read_text(text, name, reading, (), ())
     return Netlist(name, reading.root, tuple(reading.statements), reading.only_modes, reading.files)
-
-
-@contextmanager
-def _collector_paused() -> Iterator[None]:
-    """Statements are millions of small records without cycles: the collector would only walk them again and again."""
-    running = gc.isenabled()
-    gc.disable()
-    try:
-        yield
-    finally:
-        if running:
-            gc.enable()
 
 
 def _read_file(path: str, reading: _Reading, include: Word | None, above: tuple[str, ...]) -> None:

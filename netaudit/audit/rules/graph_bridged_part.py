@@ -27,7 +27,7 @@ def find(site: Site) -> Iterable[Finding]:
                 RULE.level,
                 f"all pins of {device.name} are on net {net}: correct a net, or leave the part out",
                 net=net,
-                **about(device),  # type: ignore[arg-type]  # the mapping's keys are the field names
+                **about(device),
             )
 
 

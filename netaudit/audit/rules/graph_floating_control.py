@@ -34,7 +34,7 @@ def find(site: Site) -> Iterable[Finding]:
                     "give it a level with a resistor to a rail or a driver",
                     net=None if pin in device.open_pins else net,
                     pin=pin,
-                    **about(device),  # type: ignore[arg-type]  # the mapping's keys are the field names
+                    **about(device),
                 )
 
 

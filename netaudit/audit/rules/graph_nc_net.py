@@ -25,7 +25,7 @@ def find(site: Site) -> Iterable[Finding]:
                 RULE.level,
                 f"net {net} joins {names}: write nc without quotes to leave each open, or give the net another name",
                 net=net,
-                **about(pins[0].device),  # type: ignore[arg-type]  # the mapping's keys are the field names
+                **about(pins[0].device),
             )
 
 

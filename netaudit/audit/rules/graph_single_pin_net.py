@@ -40,7 +40,7 @@ def find(site: Site) -> Iterable[Finding]:
             f"{only.name}:nc if it stays open on purpose",
             net=net,
             pin=only.name,
-            **about(only.device),  # type: ignore[arg-type]  # the mapping's keys are the field names
+            **about(only.device),
         )
 
 

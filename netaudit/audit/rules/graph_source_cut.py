@@ -31,7 +31,7 @@ def find(site: Site) -> Iterable[Finding]:
                     f"the current of {device.name} from {device.pins[a]} to {device.pins[b]} has no way back: "
                     "join the two nets by something that conducts",
                     net=device.pins[a],
-                    **about(device),  # type: ignore[arg-type]  # the mapping's keys are the field names
+                    **about(device),
                 )
 
 

@@ -60,9 +60,9 @@ def _finding(loop: list[Device]) -> Finding:
     names = listed([d.name for d in loop])
     if supplies:
         text = f"nothing limits the current around the loop of {names}: give one of them a resistance, or part them"
-        return Finding(RULE.name, RULE.level, text, **about(supplies[0]))  # type: ignore[arg-type]
+        return Finding(RULE.name, RULE.level, text, **about(supplies[0]))
     text = f"how the current shares between {names} is unknown: give them their resistances"
-    return Finding(RULE.name, "note", text, **about(loop[0]))  # type: ignore[arg-type]
+    return Finding(RULE.name, "note", text, **about(loop[0]))
 
 
 RULE = Rule("graph/source-loop", "error", "structure", "a loop of stiff branches with a supply in it", find)

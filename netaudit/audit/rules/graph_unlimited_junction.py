@@ -46,7 +46,7 @@ def find(site: Site) -> Iterable[Finding]:
                 net=start,
                 value=excess,
                 unit="V",
-                **about(path[0]),  # type: ignore[arg-type]  # the mapping's keys are the field names
+                **about(path[0]),
             )
 
 

@@ -38,7 +38,7 @@ def find(site: Site) -> Iterable[Finding]:
                 f"what {device.name} draws from {listed(nets)} is unknown: add covered {device.name} "
                 '"why" draws PIN:PIN=current, or no-current',
                 net=nets[0],
-                **about(device),  # type: ignore[arg-type]  # the mapping's keys are the field names
+                **about(device),
             )
 
 

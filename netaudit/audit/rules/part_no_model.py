@@ -28,7 +28,7 @@ def find(site: Site) -> Iterable[Finding]:
             text = f"{device.name} cannot be solved: {device.missing}"
         else:
             continue
-        yield Finding(RULE.name, RULE.level, text, **about(device))  # type: ignore[arg-type]
+        yield Finding(RULE.name, RULE.level, text, **about(device))
 
 
 RULE = Rule("part/no-model", "warning", "structure", "a device without a model", find)

@@ -19,7 +19,7 @@ def find(site: Site) -> Iterable[Finding]:
     for device in site.graph.circuit.devices:
         if device.rough and not device.missing:
             text = f"{device.name}: {device.rough}, not the part's own data"
-            yield Finding(RULE.name, RULE.level, text, **about(device))  # type: ignore[arg-type]
+            yield Finding(RULE.name, RULE.level, text, **about(device))
 
 
 RULE = Rule("part/rough-model", "note", "structure", "a model that is only a default", find)
