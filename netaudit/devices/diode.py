@@ -1,4 +1,10 @@
-"""``diode`` and ``led``: a junction with leakage, or a measured curve; breakdown where V_Z is given."""
+"""``diode`` and ``led``: a junction with leakage, or a measured curve; breakdown where V_Z is given.
+
+    i = I_S (exp(w / n V_T) - 1),  v = w + R_S i,  I_S(T) = I_S(T_0) (T/T_0)^(x/n) exp[E_g/(n k) (1/T_0 - 1/T)]
+
+x = 3, or 2 for a Schottky junction; alpha_VF at a current wins over E_g.  I_R at a voltage is a conductance that doubles
+each 10 K.  Left out: high injection, recovery, the voltage dependence of leakage.
+"""
 
 from __future__ import annotations
 

@@ -1,4 +1,10 @@
-"""``zener``: breakdown through (V_Z, I_Z) from cathode to anode, a silicon junction the other way."""
+"""``zener``: breakdown through (V_Z, I_Z) from cathode to anode, a silicon junction the other way.
+
+    v_KA = V_Z + V_k ln(i / I_Z) + R_z (i - I_Z),  slope r_Z at I_Z;  V_Z moves with alpha_VZ (T - 25 degC)
+
+V_k and R_z from r_ZK at I_ZK where given, else half of r_Z each.  I_Z (5 mA) and r_Z of the voltage's class where the part
+gives neither, which is a rough model.  Left out: noise, the leakage before the knee (I_R adds it).
+"""
 
 from __future__ import annotations
 

@@ -19,7 +19,8 @@ def name_text(name: str, designator: bool = False) -> str:
     bare = bool(_BARE.match(name)) and ".." not in name and name != "nc"
     if bare and not (designator and name in RESERVED):
         return name
-    escaped = name.replace("\\", "\\\\").replace('"', '\\"')
+    # a line break cannot stand in a netlist: it is shown as its escape
+    escaped = printable(name).replace("\\", "\\\\").replace('"', '\\"')
     return f'"{escaped}"'
 
 
