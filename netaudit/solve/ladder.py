@@ -10,6 +10,7 @@ import numpy as np
 from netaudit.devices.base import Array
 from netaudit.solve.linear import Linear
 from netaudit.solve.newton import Anchor, Effort, Iterate, newton
+from netaudit.solve.starts import starts
 from netaudit.solve.system import Numbers, System
 
 
@@ -22,6 +23,9 @@ class Found:
     method: str
     iterations: int
 
+
+#: unknowns up to which many starts are tried at once
+_LARGEST_BATCH = 200
 
 Remedy = Callable[[System, Numbers, Array, Linear], Iterate]
 
@@ -45,6 +49,21 @@ def _plain(system: System, num: Numbers, u0: Array, linear: Linear) -> Iterate:
 
 def _damped(system: System, num: Numbers, u0: Array, linear: Linear) -> Iterate:
     return newton(system, num, u0, linear, Effort(limit=200, damping=0.4))
+
+
+def _structured(system: System, num: Numbers, u0: Array, linear: Linear) -> Iterate:
+    """Newton from many starts at once; the first that ends in a solution counts."""
+    if system.n > _LARGEST_BATCH or not system.m:
+        return Iterate(np.zeros((1, system.n)), u0, np.zeros(1, dtype=bool), np.zeros(1, dtype=int))
+    total = 0
+    for effort in (Effort(limit=30), Effort(limit=80, damping=0.3)):
+        result = newton(system, num, starts(system, num), linear, effort)
+        total += int(result.iterations.max())
+        good = np.flatnonzero(result.converged)
+        if len(good):
+            k = good[:1]
+            return Iterate(result.x[k], result.u[k], result.converged[k], np.array([total]))
+    return Iterate(result.x[:1], result.u[:1], result.converged[:1], np.array([total]))
 
 
 def _supplies(system: System, num: Numbers, u0: Array, linear: Linear) -> Iterate:
@@ -98,6 +117,7 @@ def _pseudo_time(system: System, num: Numbers, u0: Array, linear: Linear) -> Ite
 REMEDIES: tuple[tuple[str, Remedy], ...] = (
     ("newton", _plain),
     ("damped newton", _damped),
+    ("structured starts", _structured),
     ("supply continuation", _supplies),
     ("pseudo-transient", _pseudo_time),
 )

@@ -112,7 +112,8 @@ class Operation:
         return {self.system.devices[k].name: float(g) for k, g in zip(self.solver.heat.devices, diagonal, strict=True)}
 
     def _nothing(self, settled: Settled, because: str) -> ModeResult:
-        certificate = certify(settled.solved.pick(0))
+        with np.errstate(all="ignore"):
+            certificate = certify(settled.solved.pick(0))
         failure = (
             f"no operating point was found; tried {settled.method[0]} ({int(settled.iterations[0])} steps); "
             f"the largest unbalanced current was {certificate.residual_current:.3g} A on net {certificate.worst_net}"

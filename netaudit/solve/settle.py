@@ -109,7 +109,7 @@ class Solver:
         steps = result.iterations.copy()
         named = ["newton"] * len(u)
         for k in np.flatnonzero(~good) if remedies else ():
-            one = num.take(np.array([k])) if num.batch else num
+            one = num.single(int(k))
             found = climb(self.system, one, self.system.start, self.linear)
             steps[k] += found.iterations
             named[k] = found.method

@@ -63,15 +63,15 @@ class Solved:
             a = np.asarray(a)
             return np.asarray(a[member]) if a.ndim > axes else a
 
-        num = self.num.take(np.array([member])) if self.num.batch else self.num
-        groups = tuple((f, i, {k: v.reshape(-1) for k, v in p.items()}) for f, i, p in num.branches.groups)
-        flat = Numbers(
-            num.g.reshape(-1), num.s.reshape(-1), num.inject.reshape(-1), num.sense.reshape(-1),
-            type(num.branches)(groups, num.branches.m), (),
-        )  # fmt: skip
         changed: Mapping[tuple[str, str], Value] = {k: one(v, 0) for k, v in self.overrides.items()}
         return Solved(
-            self.system, flat, one(self.x, 1), one(self.u, 1), one(self.temperature, 1), one(self.ambient, 0), changed
+            self.system,
+            self.num.single(member),
+            one(self.x, 1),
+            one(self.u, 1),
+            one(self.temperature, 1),
+            one(self.ambient, 0),
+            changed,
         )
 
 

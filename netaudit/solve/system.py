@@ -54,6 +54,15 @@ class Numbers:
             batch=(len(rows),),
         )
 
+    def single(self, member: int) -> Numbers:
+        """The numbers of one member, every array without the batch axis."""
+        one = self.take(np.array([member])) if self.batch else self
+        groups = tuple((f, i, {k: v.reshape(-1) for k, v in p.items()}) for f, i, p in one.branches.groups)
+        return Numbers(
+            one.g.reshape(-1), one.s.reshape(-1), one.inject.reshape(-1), one.sense.reshape(-1),
+            BranchGroups(groups, self.branches.m), (),
+        )  # fmt: skip
+
 
 class System:
     """The compiled form of one circuit (one mode)."""
