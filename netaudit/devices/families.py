@@ -12,7 +12,7 @@ from typing import Literal
 import numpy as np
 from numpy.typing import NDArray
 
-from netaudit.devices.omega import wright_omega
+from netaudit.devices.omega import HIGHEST, LOWEST, omega_start
 
 Array = NDArray[np.float64]
 Parameters = dict[str, Array]
@@ -62,85 +62,86 @@ class Exponential(Family):
 
     Parameters: ``log_I`` = ln(I_S / 1 A) (a logarithm, since a sharp breakdown's I_S underflows), ``V`` = n V_T in
     volts, ``R`` in ohms (0 allowed).  Closed form by Wright's omega function (Banwell and Jayakumar, Electronics Letters
-    36(4) 291-292, 2000), polished so that the reverse branch keeps its relative accuracy.
+    36(4) 291-292, 2000), polished by Newton steps in x = w / V so that i keeps its relative accuracy on both sides of
+    zero, and is zero at zero.  The exponent is cut at 600: currents beyond 1e260 A stay there.
     """
 
     parameters = ("log_I", "V", "R")
     shape: Shape = "increasing"
 
-    def inner(self, u: Array, p: Parameters, extra: Array | float = 0.0) -> Array:
-        """The voltage w across the bare junction when u lies across it in series with R + extra."""
-        V, r = p["V"], p["R"] + extra
-        i_s = np.exp(p["log_I"])
-        with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
-            theta = (u + r * i_s) / V + np.log(r) + p["log_I"] - np.log(V)
-            omega = wright_omega(theta)
-            w = np.where(r > 0, V * (np.log(np.maximum(omega, 1e-300)) - np.log(r) - p["log_I"] + np.log(V)), u)
-            # for small omega the logarithm above is theta - omega: use u + r I_S - V omega, which does not cancel
-            w = np.where((r > 0) & (omega < 1.0), u + r * i_s - V * omega, w)
-        return np.asarray(w, dtype=float)
-
-    def _current(self, w: Array, p: Parameters) -> tuple[Array, Array]:
-        """Current and conductance of the bare junction; the exponent is kept below overflow."""
-        V = p["V"]
-        e = np.minimum(w / V + p["log_I"], 600.0)
-        grown = np.exp(e)
-        i_s = np.exp(p["log_I"])
-        small = np.abs(w) < 0.5 * V
-        i = np.where(small, i_s * np.expm1(np.where(small, w / V, 0.0)), grown - i_s)
-        return i, grown / V
-
     def value(self, u: Array, p: Parameters) -> tuple[Array, Array]:
-        w = self.inner(u, p)
-        i, g = self._current(w, p)
-        for _ in range(2):
-            step = (u - w - p["R"] * i) / (1.0 + p["R"] * g)
-            w = w + step
-            i, g = self._current(w, p)
-        return i, g / (1.0 + p["R"] * g)
+        V, r = p["V"], p["R"]
+        _, i, grown = _junction(u, p["log_I"], V, r)
+        return i, grown / (V + r * grown)
 
     def bounds(self, low: Array, high: Array, p: Parameters) -> tuple[Array, Array]:
-        lo, _ = self.value(low, p)
-        hi, _ = self.value(high, p)
-        return self._widened(lo, hi, low, high, p)
+        return self._widened(self.value(low, p)[0], self.value(high, p)[0], low, high, p)
 
     def slope_bounds(self, low: Array, high: Array, p: Parameters) -> tuple[Array, Array]:
-        _, lo = self.value(low, p)
-        _, hi = self.value(high, p)
-        return self._widened(lo, hi, low, high, p)
+        return self._widened(self.value(low, p)[1], self.value(high, p)[1], low, high, p)
 
     def _widened(self, lo: Array, hi: Array, low: Array, high: Array, p: Parameters) -> tuple[Array, Array]:
         """Both ends grown by the error of the exponent (its magnitude times a few ulp) on top of ``widen``.
 
-        exp(e) computed from an exponent with relative error 4 eps has relative error |e| 4 eps; the polished omega step
-        leaves at most that, and the cancellation against I_S an absolute error of a few eps I_S.
+        x is known to a few ulp of the largest of u/V and x, and exp(log_I + x) to as many ulp as its exponent is large;
+        near zero expm1 keeps the relative error of x itself.
         """
         size = 1.0 + np.maximum(np.abs(low), np.abs(high)) / p["V"] + np.abs(p["log_I"])
         slack = size * 16 * np.finfo(float).eps
-        floor = np.exp(p["log_I"]) * slack
-        lo, hi = widen(np.minimum(lo, hi), np.maximum(lo, hi))
-        return lo - np.abs(lo) * slack - floor, hi + np.abs(hi) * slack + floor
+        lo, hi = widen(lo, hi)
+        return lo - np.abs(lo) * slack, hi + np.abs(hi) * slack
 
     def limit(self, old: Array, new: Array, current: Array, rho: Array, p: Parameters) -> Array:
         """Meets the curve with the line of slope -1/rho through the linear solution (Newton in s = u + rho i).
 
         With rho infinite the line is level: the curve's point of that current.  Steps below 0.3 V are accepted.
         """
-        V = p["V"]
-        i_s = np.exp(p["log_I"])
+        V, r, log_i = p["V"], p["R"], p["log_I"]
         finite = np.isfinite(rho)
-        r = np.where(finite, rho, 0.0)
-        w = self.inner(new + r * current, p, r)
-        i, _ = self._current(w, p)
-        met = w + p["R"] * i
-        floor = -i_s * (1.0 - 1e-12)
-        with np.errstate(divide="ignore", over="ignore", invalid="ignore"):
-            level = V * np.log1p(np.maximum(current, floor) / np.maximum(i_s, 1e-300))
-        level = level + p["R"] * np.maximum(current, floor)
-        # a current below -I_S has no point on the curve: the linear solution itself is as good
-        level = np.where(current > floor, np.minimum(level, np.maximum(new, level)), new)
-        step = np.where(finite, met, level)
+        seen = np.where(finite, rho, 0.0)
+        x, i, _ = _junction(new + seen * current, log_i, V, r + seen)
+        step = V * x + r * i
+        if not finite.all():
+            step = np.where(finite, step, self._level(new, current, p))
         return np.where(np.abs(new - old) < 0.3 * V, new, step)
+
+    def _level(self, new: Array, current: Array, p: Parameters) -> Array:
+        """The voltage at which the curve carries ``current``; ``new`` where it never does (at or below -I_S)."""
+        log_i = p["log_I"]
+        i_s = np.exp(log_i)
+        rising = np.logaddexp(np.log(np.maximum(current, np.finfo(float).tiny)), log_i) - log_i
+        share = np.minimum(current, 0.0) / np.maximum(i_s, np.finfo(float).tiny)
+        falling = np.log1p(np.maximum(share, -1.0 + 1e-12))
+        x = np.where(current > 0.0, rising, falling)
+        return np.where(current > -i_s * (1.0 - 1e-12), p["V"] * x + p["R"] * current, new)
+
+
+def _junction(u: Array, log_i: Array, V: Array, r: Array) -> tuple[Array, Array, Array]:
+    """(x, i, I_S e^x) with V x + r i = u and i = I_S (e^x - 1)."""
+    a, slope = u / V, r / V
+    if not np.any(r):
+        return (a, *_bare(a, log_i))
+    log_rho = np.minimum(log_i + np.log(np.maximum(slope, np.finfo(float).tiny)), -LOWEST)
+    whole = a + np.exp(log_rho)
+    omega = omega_start(np.minimum(np.maximum(whole + log_rho, LOWEST), HIGHEST))
+    # below 1 the logarithm of omega would cancel against log_rho
+    x = np.where(omega < 1.0, whole - omega, np.log(omega) - log_rho)
+    # x lies between 0 and a; the start has an error of 3e-9, which may reach beyond
+    x = np.minimum(np.maximum(x, np.minimum(a, 0.0)), np.maximum(a, 0.0))
+    for _ in range(4):
+        i, grown = _bare(x, log_i)
+        step = (a - x - slope * i) / (1.0 + slope * grown)
+        x = x + step
+        if (np.abs(step) <= 1e-8 * np.abs(x)).all():
+            break
+    return (x, *_bare(x, log_i))
+
+
+def _bare(x: Array, log_i: Array) -> tuple[Array, Array]:
+    """I_S (e^x - 1) without cancellation, and I_S e^x; written for an I_S that underflows and an e^x that overflows."""
+    grown = np.exp(np.minimum(log_i + np.maximum(x, 0.0), 600.0))
+    i = np.copysign(grown * np.expm1(-np.abs(x)), x)
+    return i, grown * np.exp(np.minimum(x, 0.0))
 
 
 @dataclass(frozen=True)
