@@ -118,3 +118,26 @@ def test_a_current_forced_into_a_blocking_junction_is_refused_with_a_sentence() 
     assert not result.points
     assert "no way back" in result.failure
     assert result.failure_net == "A"
+
+
+def test_amplifier_holds_the_current_of_a_sink() -> None:
+    """By hand: the loop holds the emitter at 1 V, 10 mA in 100 ohm; of them beta/(beta + 1) come from the collector."""
+    result = solve(
+        "PS1 supply 12V +:V -:GND\nPS2 supply 1V +:IN -:GND\nR0 resistor 1M 1:IN 2:GND\n"
+        "U1 opamp gain=1e5 swing=100mV limit=20mA IN+:IN IN-:E OUT:B V+:V V-:GND\n"
+        "Q1 npn I_S=1fA beta_F=100 B:B C:C E:E\nR1 resistor 100R 1:E 2:GND\nR2 resistor 470R 1:V 2:C\n"
+    )
+    assert result.points, result.failure
+    nets = result.points[0].nets
+    assert nets["E"] == pytest.approx(1.0, abs=5e-5)
+    assert nets["C"] == pytest.approx(12.0 - 470.0 * 0.01 * 100 / 101, abs=1e-3)
+
+
+@pytest.mark.parametrize(("volts", "output"), [(2.5, 0.05), (-2.5, 4.95)])
+def test_amplifier_with_positive_feedback_rests_at_its_swing(volts: float, output: float) -> None:
+    """By hand: half the output is fed back, 0.025 V or 2.475 V; an input beyond either leaves one point."""
+    result = solve(
+        f"PS1 supply 5V +:V -:GND\nPS2 supply {volts}V sinks=yes +:IN -:GND\nR0 resistor 1M 1:IN 2:GND\n"
+        "U1 opamp gain=1e5 swing=50mV IN+:P IN-:IN OUT:O V+:V V-:GND\nR1 resistor 10k 1:O 2:P\nR2 resistor 10k 1:P 2:GND\n"
+    )
+    assert [p.nets["O"] for p in result.points] == [pytest.approx(output, abs=1e-3)]
