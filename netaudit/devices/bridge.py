@@ -6,10 +6,11 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from netaudit.devices.base import Array, Assembly, Check, Device, Growth, Kind, Values, View, two_pin
+from netaudit.devices.base import Array, Assembly, Check, Device, Growth, Kind, Values, View
 from netaudit.devices.common import POWER_RATINGS, junction_temperature, power
 from netaudit.devices.diode import JUNCTION_KEYS
-from netaudit.devices.junction import curve_of, forward, with_junction
+from netaudit.devices.junction import forward, with_junction
+from netaudit.devices.measured import check_measured, measured_growth, stamp_measured
 
 _PAIRS = (("AC1", "+"), ("AC2", "+"), ("-", "AC1"), ("-", "AC2"))
 
@@ -27,17 +28,20 @@ def _reverse(view: View) -> Array:
 @dataclass(frozen=True)
 class Bridge(Kind):
     def resolve(self, device: Device) -> Device:
+        if device.points:
+            check_measured(device)
+            return device
         return with_junction(device)
 
     def stamp(self, device: Device, values: Values, a: Assembly) -> None:
         for p, q in _PAIRS:
             if device.points:
-                two_pin(a, curve_of(device), a.pin(p), a.pin(q))
+                stamp_measured(a, device, values, a.pin(p), a.pin(q))
             else:
                 forward(a, values, a.pin(p), a.pin(q))
 
     def growth(self, device: Device) -> Growth:
-        return curve_of(device).shape if device.points else "increasing"
+        return measured_growth(device) if device.points else "increasing"
 
     def checks(self, device: Device) -> tuple[Check, ...]:
         return (

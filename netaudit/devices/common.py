@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from netaudit.devices.base import Check, Key
+from netaudit.devices.base import Check, Device, Key
 
 POWER_RATINGS = ("P_tot", "T_ref", "T_j", "R_th_ja", "R_th_jc")
 POSITIVE_OHM = Key("ohm", least=0.0)
@@ -21,6 +21,11 @@ def junction_temperature() -> Check:
 def voltage(p: str, q: str, symbol: str = "V_max", required: bool = False) -> Check:
     """|v_p - v_q| with a rated voltage."""
     return Check("voltage", "V", (symbol,), lambda view: view.v(p) - view.v(q), both=True, required=required)
+
+
+def stated_voltage(device: Device, p: str, q: str) -> tuple[Check, ...]:
+    """|v_p - v_q| with V_max where that is stated: a part that seldom has one is not asked for it."""
+    return (voltage(p, q),) if "V_max" in device.ratings else ()
 
 
 def current(pin: str, symbol: str = "I_max", required: bool = False) -> Check:

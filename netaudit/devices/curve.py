@@ -4,11 +4,10 @@ from __future__ import annotations
 
 from dataclasses import dataclass, replace
 
-import numpy as np
-
 from netaudit.devices.base import Array, Assembly, Check, Device, Growth, Key, Kind, Values, View, conductance, two_pin
 from netaudit.devices.common import current, power, voltage
-from netaudit.devices.junction import LEAK, curve_of
+from netaudit.devices.junction import LEAK
+from netaudit.devices.measured import curve_of
 
 
 @dataclass(frozen=True)
@@ -31,7 +30,7 @@ class CurveKind(Kind):
         return (power(), voltage("+", "-"), current("+"))
 
     def requirement(self, view: View, device: Device) -> Array:
-        return np.abs(view.i("+"))
+        return view.i("+")
 
 
 KIND = CurveKind(

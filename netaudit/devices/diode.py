@@ -10,9 +10,10 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
-from netaudit.devices.base import Array, Assembly, Check, Device, Growth, Key, Kind, Values, View, two_pin
+from netaudit.devices.base import Array, Assembly, Check, Device, Growth, Key, Kind, Values, View
 from netaudit.devices.common import POWER_RATINGS, junction_temperature, power
-from netaudit.devices.junction import LEAK, breakdown, curve_of, forward, with_breakdown, with_junction
+from netaudit.devices.junction import breakdown, forward, with_breakdown, with_junction
+from netaudit.devices.measured import check_measured, measured_growth, stamp_measured
 
 JUNCTION_KEYS = {
     "I_S": Key("A", positive=True),
@@ -22,7 +23,6 @@ JUNCTION_KEYS = {
     "E_g": Key("eV", positive=True),
     "alpha_VF": Key("V/K", at="A"),
     "I_R": Key("A", at="V", least=0.0),
-    "V_F": Key("V"),
     "V_Z": Key("V", positive=True),
     "I_Z": Key("A", positive=True),
     "r_Z": Key("ohm", positive=True),
@@ -30,28 +30,29 @@ JUNCTION_KEYS = {
     "alpha_VZ": Key("1/K"),
     "material": Key(),
 }
+#: a part that is meant to stay off says so
+USE = Key(words=("clamp",))
 
 
 @dataclass(frozen=True)
 class Diode(Kind):
     def resolve(self, device: Device) -> Device:
+        if device.points:
+            check_measured(device)
+            return device
         return with_breakdown(with_junction(device))
 
     def stamp(self, device: Device, values: Values, a: Assembly) -> None:
         p, q = a.pin("A"), a.pin("K")
         if device.points:
-            two_pin(a, curve_of(device), p, q)
-            a.add(p, p, LEAK)
-            a.add(p, q, -LEAK)
-            a.add(q, q, LEAK)
-            a.add(q, p, -LEAK)
+            stamp_measured(a, device, values, p, q)
             return
         forward(a, values, p, q)
-        if values.has("V_knee"):
+        if values.has("V_Z"):
             breakdown(a, values, q, p)
 
     def growth(self, device: Device) -> Growth:
-        return curve_of(device).shape if device.points else "increasing"
+        return measured_growth(device) if device.points else "increasing"
 
     def checks(self, device: Device) -> tuple[Check, ...]:
         return (
@@ -65,4 +66,6 @@ class Diode(Kind):
         return view.i("A")
 
 
-KIND = Diode("diode", (("A", "K"),), keys={**JUNCTION_KEYS}, ratings=("I_F", "V_R", "V_RRM", *POWER_RATINGS))
+KIND = Diode(
+    "diode", (("A", "K"),), keys={**JUNCTION_KEYS, "use": USE}, ratings=("I_F", "V_R", "V_RRM", *POWER_RATINGS)
+)

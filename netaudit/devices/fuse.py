@@ -29,6 +29,8 @@ class Fuse(Kind):
         return "increasing"
 
     def checks(self, device: Device) -> tuple[Check, ...]:
+        if device.words.get("state") == "open":
+            return ()
         return (current("1", "value", required=True),)
 
 

@@ -8,15 +8,12 @@ Left out: the voltage dependence of leakage, high injection, avalanche noise.
 
 from __future__ import annotations
 
-import math
 from dataclasses import replace
-from itertools import pairwise
 
 import numpy as np
 
-from netaudit.devices.base import Assembly, Device, Value, Values, conductance, two_pin
+from netaudit.devices.base import Array, Assembly, Device, Value, Values, conductance, two_pin
 from netaudit.devices.families import EXPONENTIAL
-from netaudit.devices.table import Table
 from netaudit.failure import InputError
 from netaudit.parts.materials import Material, material, zener_class
 from netaudit.quantities.quantity import Quantity, exact
@@ -64,15 +61,34 @@ def forward(a: Assembly, values: Values, p: int, q: int) -> None:
 
 
 def breakdown(a: Assembly, values: Values, p: int, q: int) -> None:
-    """The breakdown branch: current from p to q once v_p - v_q reaches V_Z (cathode to anode)."""
+    """The breakdown branch: current from p to q once v_p - v_q reaches V_Z (cathode to anode).
+
+    i = I_0 (exp(w/V_k) - 1), v = w + R_z i, with I_0 such that the curve passes through (V_Z, I_Z) and zero.
+    """
     v_z: Value = values["V_Z"]
     if values.has("alpha_VZ"):
-        rise = np.asarray(values.temperature) - 25.0
-        per_volt = np.asarray(values["alpha_VZ"]) * rise
-        v_z = v_z + per_volt if values.has("alpha_VZ.volts") else v_z * (1.0 + per_volt)
-    i_z, knee, r = values["I_Z"], np.asarray(values["V_knee"]), np.asarray(values["R_breakdown"])
-    log_i = np.log(i_z) - (np.asarray(v_z) - r * np.asarray(i_z)) / knee
-    two_pin(a, EXPONENTIAL, p, q, log_I=log_i, V=knee, R=r)
+        rise = np.asarray(values["alpha_VZ"]) * (np.asarray(values.temperature) - 25.0)
+        v_z = v_z + rise if values.has("alpha_VZ.volts") else v_z * (1.0 + rise)
+    i_z = np.asarray(values["I_Z"])
+    v_k, r = knee(values)
+    # resolved values keep this positive at every specimen; a drift beyond all sense must not make it negative
+    x = np.maximum((np.asarray(v_z) - r * i_z) / v_k, 1e-6)
+    log_i = np.log(i_z) - x - np.log(-np.expm1(-x))
+    two_pin(a, EXPONENTIAL, p, q, log_I=log_i, V=v_k, R=r)
+
+
+def knee(values: Values) -> tuple[Array, Array]:
+    """V_k in volts and R_z in ohms of a breakdown whose slope is r_Z at I_Z: V_k/I_Z + R_z = r_Z.
+
+    With r_ZK at I_ZK also V_k/I_ZK + R_z = r_ZK, as far as that leaves R_z >= 0; else half of r_Z each.
+    """
+    i_z, r_z = np.asarray(values["I_Z"]), np.asarray(values["r_Z"])
+    if values.has("r_ZK"):
+        v_k = (np.asarray(values["r_ZK"]) - r_z) / (1.0 / np.asarray(values["I_ZK"]) - 1.0 / i_z)
+        v_k = np.minimum(v_k, i_z * r_z)
+    else:
+        v_k = 0.5 * i_z * r_z
+    return np.asarray(v_k, dtype=float), np.asarray(np.maximum(r_z - v_k / i_z, 0.0), dtype=float)
 
 
 def known_material(device: Device) -> Material | None:
@@ -88,9 +104,9 @@ def with_junction(device: Device, default: str = "") -> Device:
     values = dict(device.values)
     known = known_material(device)
     rough = device.rough
-    if device.points:
-        return device
     if "I_S" not in values:
+        if "n" in values:
+            raise InputError(f"{device.name}: n without I_S", place=device.place, mend="state both, or neither")
         source = known or (material(default, device.place) if default else None)
         if source is None:
             return replace(device, missing="it has no model: neither I_S, forward points, a curve nor a material")
@@ -120,52 +136,49 @@ def _check_conditions(device: Device, values: dict[str, Quantity]) -> None:
             raise InputError(
                 f"{device.name}: {name} needs its condition", place=device.place, mend=f'write "... @ {unit}" in quotes'
             )
+    if "alpha_VF" in values and values["alpha_VF"].high > 0:
+        raise InputError(
+            f"{device.name}: the forward voltage of a junction falls with temperature",
+            place=device.place,
+            mend='write alpha_VF with its sign: "-2mV/K @ 1mA"',
+        )
 
 
 def with_breakdown(device: Device) -> Device:
-    """The device with I_Z, the knee's voltage V_k and the series resistance of its breakdown; see the module."""
+    """The device with I_Z, r_Z and (beside r_ZK) I_ZK of its breakdown; see ``breakdown``."""
     values = dict(device.values)
     if "V_Z" not in values:
         return device
-    v_z = values["V_Z"].nominal
-    if v_z <= 0:
-        raise InputError(f"{device.name}: V_Z must be above zero", place=device.place)
+    class_i, class_r = zener_class(max(values["V_Z"].nominal, 0.0))
+    lacking = [name for name in ("I_Z", "r_Z") if name not in values]
     rough = device.rough
-    class_i, class_r = zener_class(v_z)
-    if "I_Z" not in values and "r_Z" not in values:
-        rough = rough or f"its I_Z and r_Z are those of a typical {v_z:g} V part"
+    if lacking:
+        rough = (
+            rough
+            or f"its {' and '.join(lacking)} {'are those' if lacking[1:] else 'is that'} of a typical {values['V_Z'].nominal:g} V part"
+        )
     values.setdefault("I_Z", exact(class_i, "A"))
     values.setdefault("r_Z", exact(class_r, "ohm"))
-    i_z, r_z = values["I_Z"].nominal, values["r_Z"].nominal
-    if i_z <= 0 or r_z <= 0:
-        raise InputError(f"{device.name}: I_Z and r_Z must be above zero", place=device.place)
-    knee, r = i_z * r_z / 2, r_z / 2
-    if "r_ZK" in values:
-        i_zk = values["I_ZK"].nominal if "I_ZK" in values else _rated(device, "I_ZK")
-        r_zk = values["r_ZK"].nominal
-        if not 0 < i_zk < i_z or r_zk <= r_z:
-            raise InputError(f"{device.name}: r_ZK must be above r_Z, at an I_ZK below I_Z", place=device.place)
-        knee = min((r_zk - r_z) / (1 / i_zk - 1 / i_z), i_z * r_z)
-        r = r_z - knee / i_z
-    values["V_knee"], values["R_breakdown"] = exact(knee, "V"), exact(r, "ohm")
+    if "r_ZK" in values and "I_ZK" not in values and "I_ZK" in device.ratings:
+        values["I_ZK"] = exact(device.ratings["I_ZK"].nominal, "A")
+    _check_breakdown(device, values)
     if "alpha_VZ" in values and values["alpha_VZ"].unit == "V/K":
         values["alpha_VZ.volts"] = exact(1.0, "1")
     return replace(device, values=values, rough=rough)
 
 
-def _rated(device: Device, symbol: str) -> float:
-    rating = device.ratings.get(symbol)
-    return rating.nominal if rating is not None else math.nan
-
-
-def curve_of(device: Device) -> Table:
-    """The measured curve of a device as a branch family; InputError for points that are none."""
-    points = tuple(sorted(device.points))
-    if len(points) < 2:
-        raise InputError(f"{device.name}: a curve needs two points at least", place=device.place)
-    for (v0, i0), (v1, i1) in pairwise(points):
-        if v0 == v1:
-            raise InputError(
-                f"{device.name}: two currents, {i0:g} A and {i1:g} A, at one voltage {v0:g} V", place=device.place
-            )
-    return Table(points)
+def _check_breakdown(device: Device, values: dict[str, Quantity]) -> None:
+    """Raises InputError for a breakdown that no specimen can have."""
+    name, place = device.name, device.place
+    if min(values[key].low for key in ("V_Z", "I_Z", "r_Z")) <= 0:
+        raise InputError(f"{name}: V_Z, I_Z and r_Z must be above zero", place=place)
+    if values["r_Z"].high * values["I_Z"].high >= values["V_Z"].low:
+        raise InputError(
+            f"{name}: r_Z I_Z is not below V_Z, so that the breakdown would begin below 0 V",
+            place=place,
+            mend="correct r_Z or the current I_Z that it is stated at",
+        )
+    if "r_ZK" in values:
+        low = "I_ZK" in values and values["I_ZK"].low > 0 and values["I_ZK"].high < values["I_Z"].low
+        if not low or values["r_ZK"].low <= values["r_Z"].high:
+            raise InputError(f"{name}: r_ZK must be above r_Z, at an I_ZK below I_Z", place=place)

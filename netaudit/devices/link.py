@@ -5,7 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 from netaudit.devices.base import Assembly, Check, Device, Growth, Kind, Values, resistance
-from netaudit.devices.common import POSITIVE_OHM, current
+from netaudit.devices.common import POSITIVE_OHM, current, stated_voltage
 
 
 @dataclass(frozen=True)
@@ -17,7 +17,7 @@ class Link(Kind):
         return "increasing"
 
     def checks(self, device: Device) -> tuple[Check, ...]:
-        return (current("1"),)
+        return (current("1"), *stated_voltage(device, "1", "2"))
 
 
-KIND = Link("link", (("1", "2"),), keys={"R": POSITIVE_OHM}, ratings=("I_max",), polarised=False)
+KIND = Link("link", (("1", "2"),), keys={"R": POSITIVE_OHM}, ratings=("I_max", "V_max"), polarised=False)

@@ -24,15 +24,18 @@ from netaudit.devices.base import (
 from netaudit.devices.common import power, voltage
 from netaudit.quantities.quantity import exact
 
+#: the least share of its resistance that a part keeps: its polynomial is no law where it would fall below
+LEAST_SHARE = 1e-3
+
 
 def at_temperature(values: Values, name: str = "value") -> Value:
-    """The resistance at the device's temperature in ohms."""
+    """The resistance at the device's temperature in ohms, never below LEAST_SHARE of that at T_0."""
     r = np.asarray(values[name])
     if not (values.has("alpha") or values.has("alpha_2")):
         return r
     rise = np.asarray(values.temperature) - np.asarray(values["T_0"])
     first, second = np.asarray(values.get("alpha", 0.0)), np.asarray(values.get("alpha_2", 0.0))
-    return np.asarray(r * (1.0 + first * rise + second * rise**2), dtype=float)
+    return np.asarray(r * np.maximum(1.0 + first * rise + second * rise**2, LEAST_SHARE), dtype=float)
 
 
 def stamp_resistance(a: Assembly, p: int, q: int, r: Value, low: bool, name: str = "i") -> None:
@@ -59,7 +62,8 @@ class Resistor(Kind):
         return "increasing"
 
     def checks(self, device: Device) -> tuple[Check, ...]:
-        return (power(required=True), voltage("1", "2"))
+        # 0R is a link: it never heats, so that nothing is left open without its P_tot
+        return (power(required=device.values["value"].high > 0.0), voltage("1", "2"))
 
     def requirement(self, view: View, device: Device) -> Array:
         return np.abs(view.i("1"))

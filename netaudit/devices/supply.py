@@ -12,6 +12,7 @@ from dataclasses import dataclass, replace
 import numpy as np
 
 from netaudit.devices.base import Array, Assembly, Check, Device, Growth, Key, Kind, Value, Values, ValueSpec, View
+from netaudit.devices.common import stated_voltage
 from netaudit.devices.families import RAMP
 from netaudit.quantities.quantity import exact
 
@@ -57,7 +58,7 @@ class Supply(Kind):
     def checks(self, device: Device) -> tuple[Check, ...]:
         if device.words.get("state") == "off":
             return ()
-        return (Check("current", "A", ("I_max",), delivered, both=True),)
+        return (Check("current", "A", ("I_max",), delivered, both=True), *stated_voltage(device, "+", "-"))
 
     def requirement(self, view: View, device: Device) -> Array:
         return delivered(view)
@@ -87,6 +88,6 @@ KIND = Supply(
         "R": Key("ohm", least=0.0),
         "sinks": Key("A", words=("no", "yes"), least=0.0),
     },
-    ratings=("I_max",),
+    ratings=("I_max", "V_max"),
     heats=False,
 )

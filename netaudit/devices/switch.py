@@ -5,7 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 from netaudit.devices.base import Assembly, Check, Device, Growth, Kind, Values, resistance
-from netaudit.devices.common import POSITIVE_OHM, current
+from netaudit.devices.common import POSITIVE_OHM, current, stated_voltage
 
 
 @dataclass(frozen=True)
@@ -21,7 +21,7 @@ class Switch(Kind):
         return "increasing"
 
     def checks(self, device: Device) -> tuple[Check, ...]:
-        return (current("1", required=True),)
+        return (current("1", required=True), *stated_voltage(device, "1", "2"))
 
 
 KIND = Switch(
@@ -29,7 +29,7 @@ KIND = Switch(
     (("1", "2"),),
     states=("open", "closed"),
     keys={"R_on": POSITIVE_OHM},
-    ratings=("I_max",),
+    ratings=("I_max", "V_max"),
     polarised=False,
     heats=False,
 )

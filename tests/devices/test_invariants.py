@@ -140,6 +140,18 @@ def test_a_file_of_the_room_is_a_kind_or_serves_several() -> None:
 
     import netaudit.devices
 
-    shared = {"base", "families", "omega", "junction", "table", "common", "rows", "power", "bipolar", "field_effect"}
+    shared = {
+        "base",
+        "measured",
+        "families",
+        "omega",
+        "junction",
+        "table",
+        "common",
+        "rows",
+        "power",
+        "bipolar",
+        "field_effect",
+    }
     files = {p.stem for p in Path(netaudit.devices.__file__).parent.glob("*.py")} - {"__init__"} - shared
     assert files == {name.replace("-", "_") for name in KINDS}
