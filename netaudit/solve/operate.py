@@ -73,8 +73,10 @@ class Operation:
             further = further_points(self.solver, settled)
             every = [settled, *further.settled]
             because += further.said
-        self.boards = [one.solved for one in every]
-        points = tuple(self._point(one, proven) for one in every)
+        # unstable points last: what is asked for "the" point should get one in which a board can rest
+        pairs = sorted(((self._point(one, proven), one.solved) for one in every), key=lambda p: p[0].stable is False)
+        self.boards = [board for _, board in pairs]
+        points = tuple(point for point, _ in pairs)
         if followed.runaway:
             said = "it runs away thermally: shown is the last point before the fold, which is no equilibrium of the whole board"
             points = tuple(replace(p, stable=None, stable_because=said) for p in points)

@@ -50,10 +50,10 @@ def structure(system: System) -> Structure:
             other.append(device.name)
     if other:
         return Structure(
-            False, False, f"{_listed(other)} can act as controlled sources or have falling characteristics"
+            False, False, f"a controlled source or a falling characteristic is possible at {_listed(other)}"
         )
     if flat:
-        said = f"{_listed(flat)} have a flat or vertical piece, which leaves existence but not uniqueness"
+        said = f"a flat or vertical piece in the characteristic of {_listed(flat)} leaves existence but not uniqueness"
         return Structure(False, True, said)
     return Structure(
         True,
