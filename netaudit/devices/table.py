@@ -8,6 +8,7 @@ so hills stay where the data has them and nowhere else.
 from __future__ import annotations
 
 from dataclasses import dataclass, field
+from functools import cached_property
 
 import numpy as np
 from numpy.typing import NDArray
@@ -38,59 +39,71 @@ class Table(Family):
             return "increasing"
         return "nondecreasing" if (np.diff(self._y) >= 0).all() and self._d[0] >= 0 and self._d[-1] >= 0 else "other"
 
-    def _pieces(self, u: Array) -> tuple[Index, Array, Array, Array, Array]:
-        """For each u: piece number, width, and the cubic's coefficients (c1, c2, c3) about the piece's left point."""
-        k = np.clip(np.searchsorted(self._x, u, side="right") - 1, 0, len(self._x) - 2)
-        h = self._x[k + 1] - self._x[k]
-        secant = (self._y[k + 1] - self._y[k]) / h
-        c2 = (3 * secant - 2 * self._d[k] - self._d[k + 1]) / h
-        c3 = (self._d[k] + self._d[k + 1] - 2 * secant) / (h * h)
-        return k, h, self._d[k], c2, c3
+    @cached_property
+    def _cubics(self) -> tuple[Array, Array, Array]:
+        """Width of every piece and the coefficients c2, c3 about its left point; c1 is the slope there."""
+        h, d = np.diff(self._x), self._d
+        secant = np.diff(self._y) / h
+        return h, (3 * secant - 2 * d[:-1] - d[1:]) / h, (d[:-1] + d[1:] - 2 * secant) / (h * h)
+
+    @cached_property
+    def _steepest(self) -> float:
+        """A bound of every slope, for the scale of rounding errors."""
+        h, c2, c3 = self._cubics
+        return float((np.abs(self._d[:-1]) + h * (2 * np.abs(c2) + 3 * np.abs(c3) * h)).max())
 
     def value(self, u: Array, p: Parameters) -> tuple[Array, Array]:
-        k, h, c1, c2, c3 = self._pieces(u)
-        t = np.clip(u - self._x[k], 0.0, h)
-        inside = self._y[k] + t * (c1 + t * (c2 + t * c3))
-        slope = c1 + t * (2 * c2 + 3 * c3 * t)
-        beyond = u - np.clip(u, self._x[0], self._x[-1])
-        slope = np.where(beyond < 0, self._d[0], np.where(beyond > 0, self._d[-1], slope))
-        return inside + beyond * slope * (beyond != 0), slope
+        h, c2, c3 = self._cubics
+        k = np.clip(np.searchsorted(self._x, u, side="right") - 1, 0, len(h) - 1)
+        c1, c2, c3 = self._d[k], c2[k], c3[k]
+        held = np.clip(u, self._x[0], self._x[-1])
+        t = held - self._x[k]
+        beyond = u - held
+        slope = np.where(beyond < 0, self._d[0], np.where(beyond > 0, self._d[-1], c1 + t * (2 * c2 + 3 * c3 * t)))
+        return self._y[k] + t * (c1 + t * (c2 + t * c3)) + beyond * slope, slope
 
     def bounds(self, low: Array, high: Array, p: Parameters) -> tuple[Array, Array]:
         at_low, at_high = self.value(low, p)[0], self.value(high, p)[0]
         lo, hi = np.minimum(at_low, at_high), np.maximum(at_low, at_high)
-        for x, y in zip(self._x, self._y, strict=True) if self.shape == "other" else ():
-            inside = (low <= x) & (x <= high)
-            lo, hi = np.where(inside, np.minimum(lo, y), lo), np.where(inside, np.maximum(hi, y), hi)
+        if self.shape == "other":
+            # every piece is monotone: besides the ends only points between them can be extreme
+            first = np.searchsorted(self._x, low, side="left")
+            last = np.searchsorted(self._x, high, side="right") - 1
+            some = first <= last
+            first, last = np.where(some, first, 0), np.where(some, last, 0)
+            least, most = self._point_ranges
+            lo = np.where(some, np.minimum(lo, _range(least, first, last, np.minimum)), lo)
+            hi = np.where(some, np.maximum(hi, _range(most, first, last, np.maximum)), hi)
         # Horner's rule on three coefficients: a few ulp of the largest term, for which the scale of the data stands
         slack = 64 * np.finfo(float).eps * (np.abs(self._y).max() + np.maximum(np.abs(lo), np.abs(hi)))
         return lo - slack, hi + slack
 
     def slope_bounds(self, low: Array, high: Array, p: Parameters) -> tuple[Array, Array]:
-        least, most = self._piece_slopes
-        first = np.clip(np.searchsorted(self._x, low, side="right") - 1, -1, len(self._x) - 1) + 1
-        last = np.clip(np.searchsorted(self._x, high, side="left") - 1, -1, len(self._x) - 1) + 1
-        last = np.maximum(first, last)
+        least, most = self._slope_ranges
+        first = np.searchsorted(self._x, low, side="right")
+        last = np.maximum(first, np.searchsorted(self._x, high, side="left"))
         lo, hi = _range(least, first, last, np.minimum), _range(most, first, last, np.maximum)
-        slack = 64 * np.finfo(float).eps * float(np.abs(self._d).max() + np.abs(most[-1]).max(initial=0.0))
+        slack = 64 * np.finfo(float).eps * self._steepest
         return widen(lo - slack, hi + slack)
 
-    @property
-    def _piece_slopes(self) -> tuple[list[Array], list[Array]]:
+    @cached_property
+    def _point_ranges(self) -> tuple[list[Array], list[Array]]:
+        return _levels(self._y, np.minimum), _levels(self._y, np.maximum)
+
+    @cached_property
+    def _slope_ranges(self) -> tuple[list[Array], list[Array]]:
         """Least and greatest slope of every piece (the straight ends first and last), as tables for range queries."""
-        found: tuple[list[Array], list[Array]] | None = self.__dict__.get("_ranges")
-        if found is None:
-            _, h, c1, c2, c3 = self._pieces(self._x[:-1])
-            ends = np.stack([c1, c1 + h * (2 * c2 + 3 * c3 * h)])
-            with np.errstate(divide="ignore", invalid="ignore"):
-                t = np.where(c3 != 0, -c2 / (3 * c3), -1.0)
-            top = np.where((t > 0) & (t < h), c1 + t * (2 * c2 + 3 * c3 * t), ends[0])
-            every = np.concatenate([ends, top[None]])
-            least = np.concatenate([[self._d[0]], every.min(axis=0), [self._d[-1]]])
-            most = np.concatenate([[self._d[0]], every.max(axis=0), [self._d[-1]]])
-            found = (_levels(least, np.minimum), _levels(most, np.maximum))
-            object.__setattr__(self, "_ranges", found)
-        return found
+        h, c2, c3 = self._cubics
+        c1 = self._d[:-1]
+        ends = np.stack([c1, c1 + h * (2 * c2 + 3 * c3 * h)])
+        with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
+            t = np.where(c3 != 0, -c2 / (3 * c3), -1.0)
+        inside = (t > 0) & (t < h)
+        top = np.where(inside, c1 + np.where(inside, t, 0.0) * (2 * c2 + 3 * c3 * np.where(inside, t, 0.0)), ends[0])
+        every = np.concatenate([ends, top[None]])
+        least = np.concatenate([[self._d[0]], every.min(axis=0), [self._d[-1]]])
+        most = np.concatenate([[self._d[0]], every.max(axis=0), [self._d[-1]]])
+        return _levels(least, np.minimum), _levels(most, np.maximum)
 
     def limit(self, old: Array, new: Array, current: Array, rho: Array, p: Parameters) -> Array:
         """Steps no further than the data is wide, so that the straight ends do not throw the iteration off."""
