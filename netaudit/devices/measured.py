@@ -8,6 +8,7 @@ voltage elsewhere, so that the curve still passes through the origin.
 
 from __future__ import annotations
 
+from dataclasses import replace
 from functools import lru_cache
 from itertools import pairwise
 
@@ -21,7 +22,7 @@ from netaudit.failure import InputError
 #: model values that a whole measured curve leaves no room for
 _SECOND_MODEL = ("I_S", "n", "R_S", "V_Z", "I_Z", "r_Z")
 #: a forward junction ends below this, a breakdown above it, V
-_FORWARD = 1.5
+FORWARD = 1.5
 #: the least share of its voltages that a curve keeps, however far its shifts would move it
 _LEAST = 0.05
 
@@ -59,20 +60,22 @@ def two_way_curve(device: Device) -> Table:
     return _table((*((-v, -i) for v, i in reversed(beyond)), (0.0, 0.0), *beyond))
 
 
-def check_measured(device: Device, breakdown: bool = False) -> None:
-    """Raises InputError for a curve beside another model, or (``breakdown``) one that runs from A to K."""
+def check_measured(device: Device) -> None:
+    """Raises InputError for a curve beside another model, or one that is none."""
     second = next((name for name in _SECOND_MODEL if name in device.values), None)
     if second is not None:
         raise InputError(
             f"{device.name}: a measured curve and {second} are two models", place=device.place, mend="keep one of them"
         )
+    curve_of(device)
+
+
+def from_cathode(device: Device) -> Device:
+    """The device with its points from K to A: a curve without anything above ``FORWARD`` was taken from A to K."""
     points = junction_curve(device).points
-    if breakdown and points[0][0] < -_FORWARD and points[-1][0] < _FORWARD:
-        raise InputError(
-            f"{device.name}: its curve breaks down at negative voltages",
-            place=device.place,
-            mend="measure from K to A, or turn the signs",
-        )
+    if points[-1][0] < FORWARD:
+        points = tuple((0.0 - v, 0.0 - i) for v, i in reversed(points))
+    return replace(device, points=points)
 
 
 def stamp_measured(a: Assembly, device: Device, values: Values, p: int, q: int) -> None:

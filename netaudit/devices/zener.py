@@ -3,8 +3,8 @@
     v_KA = V_Z + V_k ln(i / I_Z) + R_z (i - I_Z),  slope r_Z at I_Z;  V_Z moves with alpha_VZ (T - 25 degC)
 
 V_k and R_z from r_ZK at I_ZK where given, else half of r_Z each.  I_Z (5 mA) and r_Z of the voltage's class where the part
-gives neither, which is a rough model.  A measured curve runs from K to A, breakdown at positive voltages; where it ends at
-0 V the silicon junction stands in for the rest.  Left out: noise, the leakage before the knee (I_R adds it).
+gives neither, which is a rough model.  A measured curve shows its breakdown at positive voltages (taken from K to A) or at
+negative ones (from A to K); where it ends at 0 V the silicon junction stands in for the rest.  Left out: noise, the leakage before the knee (I_R adds it).
 """
 
 from __future__ import annotations
@@ -15,7 +15,14 @@ from netaudit.devices.base import Array, Assembly, Check, Device, Growth, Key, K
 from netaudit.devices.common import POWER_RATINGS, junction_temperature, power
 from netaudit.devices.diode import JUNCTION_KEYS, USE
 from netaudit.devices.junction import breakdown, forward, with_breakdown, with_junction
-from netaudit.devices.measured import check_measured, junction_curve, measured_growth, stamp_measured
+from netaudit.devices.measured import (
+    FORWARD,
+    check_measured,
+    from_cathode,
+    junction_curve,
+    measured_growth,
+    stamp_measured,
+)
 
 BREAKDOWN_KEYS = {**JUNCTION_KEYS, "I_ZK": Key("A", positive=True), "use": USE}
 
@@ -26,7 +33,10 @@ def with_zener(device: Device) -> Device:
         if "V_Z" not in device.values:
             return replace(device, missing="it has no model: no V_Z")
         return with_breakdown(with_junction(device, default="silicon"))
-    check_measured(device, breakdown=True)
+    check_measured(device)
+    device = from_cathode(device)
+    if device.points[-1][0] < FORWARD:
+        return replace(device, missing="it has no model: its measured curve does not reach the breakdown")
     ends_at_zero = junction_curve(device).points[0] == (-1.0, 0.0)
     return with_junction(device, default="silicon") if ends_at_zero else device
 

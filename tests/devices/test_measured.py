@@ -63,10 +63,17 @@ def test_zener_measured_in_both_directions_needs_no_other_junction(tmp_path: Pat
     assert driven(tmp_path, "zener", both, "5mA", "K:A A:GND") == pytest.approx(5.1, rel=1e-9)
 
 
-def test_zener_measured_the_other_way_round_is_refused(tmp_path: Path) -> None:
-    turned = '["-5.1V @ -5mA", "-4.9V @ -1mA", "0V @ 0A", "0.8V @ 5mA"]'
-    with pytest.raises(InputError, match="breaks down at negative voltages; measure from K to A"):
-        driven(tmp_path, "zener", turned, "5mA", "K:A A:GND")
+@pytest.mark.parametrize("forward", ['"0.8V @ 5mA"', ""])
+def test_zener_measured_from_anode_to_cathode_breaks_down_the_same_way(tmp_path: Path, forward: str) -> None:
+    turned = f'["-5.1V @ -5mA", "-4.9V @ -1mA", "0V @ 0A", {forward}]'
+    assert driven(tmp_path, "zener", turned, "5mA", "K:A A:GND") == pytest.approx(5.1, rel=1e-6)
+    assert 0.6 < driven(tmp_path, "zener", turned, "5mA", "A:A K:GND") < 0.81
+
+
+def test_zener_measured_in_forward_direction_only_is_not_audited(tmp_path: Path) -> None:
+    text = "PS1 supply 12V +:B -:GND\nR1 resistor 1k 1:B 2:A\nD1 zener part=X K:A A:GND\n"
+    found = board(tmp_path, "zener", '["0V @ 0A", "0.6V @ 1mA", "0.7V @ 10mA"]', text).audit().findings
+    assert [f.device for f in found if f.rule == "part/no-model"] == ["D1"]
 
 
 @pytest.mark.parametrize("pins", ["1:A 2:GND", "2:A 1:GND"])
