@@ -10,7 +10,7 @@ from netaudit.audit.context import CONDUCTS, Context, context
 from netaudit.audit.coverage import coverage, fitted, rating_notes, spread_note
 from netaudit.audit.expectation import expectation_tasks
 from netaudit.audit.feeding import upstream
-from netaudit.audit.lint import lint, ordered
+from netaudit.audit.lint import ordered, structural
 from netaudit.audit.package import package_devices, package_tasks
 from netaudit.audit.points import point_tasks
 from netaudit.audit.records import Audit, SampledStress, Stress
@@ -79,7 +79,7 @@ def _joined(board: Board, audits: Sequence[ModeAudit], options: Options) -> Audi
             items.setdefault(item.key, item)
     every = list(items.values())
     stresses = [s for one in audits for s in one.stresses]
-    found = [*lint(board), *(f for one in audits for f in one.findings)]
+    found = [*structural(board), *(f for one in audits for f in one.findings)]
     if not options.partial:
         lit = {s.device for s in stresses if s.quantity == "forward-current" and s.worst > CONDUCTS}
         found += never_conducts([one.result for one in audits], lit)

@@ -5,28 +5,13 @@ from __future__ import annotations
 from collections.abc import Iterable, Sequence
 
 from netaudit.audit.records import Coverage
-from netaudit.audit.rule import listed
+from netaudit.audit.rules.part_no_rating import rating_note
+from netaudit.audit.rules.part_no_spread import spread_note as held_at_nominal
+from netaudit.audit.rules.part_no_spread import without_spread
 from netaudit.audit.stress import Watched
 from netaudit.circuit.circuit import Board
 from netaudit.devices.base import Device
 from netaudit.finding import Finding
-
-#: values that decide a stress, by kind: held at nominal they are worth a remark
-_DECIDING = {
-    "resistor": ("value",),
-    "trimmer": ("value",),
-    "thermistor": ("value",),
-    "diode": ("V_F",),
-    "led": ("V_F",),
-    "bridge": ("V_F",),
-    "zener": ("V_Z",),
-    "suppressor": ("V_Z",),
-    "npn": ("h_FE", "beta_F"),
-    "pnp": ("h_FE", "beta_F"),
-    "nmos": ("V_th", "V_GS_th"),
-    "pmos": ("V_th", "V_GS_th"),
-    "optocoupler": ("CTR",),
-}
 
 
 def fitted(board: Board) -> dict[str, Device]:
@@ -36,18 +21,6 @@ def fitted(board: Board) -> dict[str, Device]:
         for device in circuit.devices:
             out.setdefault(device.name, device)
     return out
-
-
-def without_spread(devices: Iterable[Device]) -> list[str]:
-    """Designators whose deciding value has no tolerance."""
-    names = []
-    for device in devices:
-        deciding = _DECIDING.get(device.kind, ())
-        if device.missing or device.points or not deciding:
-            continue
-        if not any(name in device.values and device.values[name].varies for name in deciding):
-            names.append(device.name)
-    return names
 
 
 def missing_ratings(items: Sequence[Watched]) -> dict[str, list[Watched]]:
@@ -62,33 +35,12 @@ def missing_ratings(items: Sequence[Watched]) -> dict[str, list[Watched]]:
 def rating_notes(items: Sequence[Watched]) -> Iterable[Finding]:
     """``part/no-rating``: one note a device."""
     for checks in missing_ratings(items).values():
-        device = checks[0].device
-        said = ", ".join(f"{c.check.quantity.replace('-', ' ')} ({c.limit.missing})" for c in checks)
-        needed = [c for c in checks if c.check.required]
-        tail = ": it counts as not audited until that is stated" if needed else ""
-        yield Finding(
-            "part/no-rating",
-            "note",
-            f"{device.name}: not checked for lack of a rating: {said}{tail}",
-            device=device.name,
-            file=device.place.file,
-            line=device.place.line,
-        )
+        yield rating_note(checks[0].device, [(c.check, c.limit.missing) for c in checks])
 
 
 def spread_note(board: Board, nominal: bool) -> Iterable[Finding]:
     """``part/no-spread``: one note a board."""
-    names = without_spread(fitted(board).values())
-    if names and not nominal:
-        yield Finding(
-            "part/no-spread",
-            "note",
-            f"held at nominal for lack of a tolerance: {listed(names, 12)}",
-            file=board.name,
-            line=1,
-            value=float(len(names)),
-            unit="1",
-        )
+    return () if nominal else held_at_nominal(board.name, without_spread(fitted(board).values()))
 
 
 def coverage(board: Board, items: Sequence[Watched]) -> Coverage:

@@ -16,21 +16,26 @@ Stage = Literal["structure", "stress", "point", "expect", "fault", "gate"]
 
 @dataclass(frozen=True)
 class Site:
-    """What a structural rule looks at: the board and the graph of one of its modes."""
+    """What a structural rule looks at: the board, the graph of one of its modes, and those of all of them."""
 
     board: Board
     graph: Graph
+    graphs: tuple[Graph, ...]
 
 
 @dataclass(frozen=True)
 class Rule:
-    """A rule.  ``find`` is there for structural rules; findings of other stages come from the audit of solved points."""
+    """A rule.  ``find`` is there for structural rules; findings of other stages come from the audit of solved points.
+
+    ``whole``: the rule looks at all modes together and is asked once a board, else it is asked once a mode.
+    """
 
     name: str
     level: Level
     stage: Stage
     summary: str
     find: Callable[[Site], Iterable[Finding]] | None = field(default=None, compare=False)
+    whole: bool = False
 
 
 class About(TypedDict):

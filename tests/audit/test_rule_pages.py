@@ -9,6 +9,7 @@ import pytest
 
 import netaudit
 from netaudit.audit.rules import PAGES, RULES
+from netaudit.finding import Finding
 
 _HEAD = "netlist 1\nground GND\n"
 
@@ -23,14 +24,22 @@ def example(name: str, which: str) -> str:
     return textwrap.dedent("\n".join(inside)) + "\n"
 
 
-#: nothing but a fault makes a good circuit unsolvable; pin limits need a part table; packages are not opened yet
-_WITHOUT = {"point/none-found", "stress/pin-voltage", "stress/package-current"}
-_WITH = [name for name, rule in RULES.items() if rule.stage in ("stress", "point", "expect") and name not in _WITHOUT]
+#: nothing but a fault makes a good circuit unsolvable; the others need a part table or an export beside the netlist
+_WITHOUT = {"point/none-found", "stress/pin-voltage", "stress/package-current", "part/no-pin-map"}
+_STAGES = ("structure", "stress", "point", "expect")
+_WITH = [name for name, rule in RULES.items() if rule.stage in _STAGES and name not in _WITHOUT]
+
+
+def found(name: str, text: str) -> list[Finding]:
+    """The rule's findings on a board: structural rules are asked without solving."""
+    board = netaudit.loads(_HEAD + text)
+    every = board.lint() if RULES[name].stage == "structure" else board.audit().findings
+    return [f for f in every if f.rule == name]
 
 
 @pytest.mark.parametrize("name", _WITH)
 def test_board_that_fails(name: str) -> None:
-    findings = [f for f in netaudit.loads(_HEAD + example(name, "fails")).audit().findings if f.rule == name]
+    findings = found(name, example(name, "fails"))
     assert findings
     assert {f.level for f in findings} == {RULES[name].level}
 
@@ -39,7 +48,7 @@ def test_board_that_fails(name: str) -> None:
 def test_board_that_passes(name: str) -> None:
     text = example(name, "passes")
     assert text
-    assert [f for f in netaudit.loads(_HEAD + text).audit().findings if f.rule == name] == []
+    assert found(name, text) == []
 
 
 @pytest.mark.parametrize("name", _WITH)

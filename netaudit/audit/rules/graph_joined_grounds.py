@@ -1,10 +1,25 @@
 """Two reference nets in one conductively connected part of the circuit.
 
-Each ``ground`` holds its net at 0 V.  Two of them in one connected part are a short between the two nets that the board
-does not have.  Keep one, and join the nets by what joins them on the board (a link, a resistor).
+Every ``ground`` holds its net at 0 V.  Two of them in one connected part act as a short between the two nets that the
+board does not have, and currents through it are not seen.
 
-    fails:  ground GND  ground AGND  with R1 resistor 10R 1:GND 2:AGND
-    passes: ground GND
+Mend: keep one ``ground`` for each galvanically separate part, and join the nets by what joins them on the board (a
+link, a resistor).
+
+Source: common practice.
+
+A board that fails and one that passes, below ``netlist 1`` and ``ground GND``:
+
+    fails:
+        ground AGND
+        PS1 supply 12V +:VIN -:GND
+        R1 resistor 1k 1:VIN 2:AGND
+        R2 resistor 10R 1:AGND 2:GND
+
+    passes:
+        PS1 supply 12V +:VIN -:GND
+        R1 resistor 1k 1:VIN 2:AGND
+        R2 resistor 10R 1:AGND 2:GND
 """
 
 from __future__ import annotations

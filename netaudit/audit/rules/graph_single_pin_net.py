@@ -1,10 +1,26 @@
 """A net with a single pin on it.
 
-Usually a name typed in two ways, or a wire that was forgotten.  Nets that leave the board do so by a connector, nets
-that are probed by a test point, and a pin that stays open on purpose is written ``PIN:nc``: none of these is reported.
+Usually a name written in two ways, or a wire that was forgotten.  Nets leave the board by a connector and are probed
+at a test point, and a pin that stays open on purpose is written ``PIN:nc``: none of these is reported.  A pin whose
+partners are not fitted in some mode only is not alone.
 
-    fails:  R2 resistor 1k 1:OUT 2:GNDD     (nothing else is on GNDD)
-    passes: R2 resistor 1k 1:OUT 2:nc
+Mend: correct the name, add what is missing, or write ``PIN:nc``.
+
+Source: common practice.
+
+A board that fails and one that passes, below ``netlist 1`` and ``ground GND``:
+
+    fails:
+        PS1 supply 12V +:VIN -:GND
+        R1 resistor 1k 1:VIN 2:OUT
+        R2 resistor 1k 1:OUTT 2:GND
+        R3 resistor 1k 1:OUT 2:GND
+
+    passes:
+        PS1 supply 12V +:VIN -:GND
+        R1 resistor 1k 1:VIN 2:OUT
+        R2 resistor 1k 1:nc 2:GND
+        R3 resistor 1k 1:OUT 2:GND
 """
 
 from __future__ import annotations
@@ -12,36 +28,28 @@ from __future__ import annotations
 from collections.abc import Iterable
 
 from netaudit.audit.rule import Rule, Site, about
+from netaudit.circuit.graph import Pin
 from netaudit.finding import Finding
 
 _MARKS = frozenset({"connector", "testpoint"})
 
 
 def find(site: Site) -> Iterable[Finding]:
-    fitted_elsewhere = {
-        net for c in site.board.circuits for d in c.devices for net in d.pins.values() if d.kind in _MARKS
-    }
-    pins_anywhere: dict[str, set[tuple[str, str]]] = {}
-    for circuit in site.board.circuits:
-        for device in circuit.devices:
-            for pin, net in device.pins.items():
-                pins_anywhere.setdefault(net, set()).add((device.name, pin))
-    for net in site.graph.circuit.nets:
-        pins = site.graph.on_net[net]
-        if len(pins) != 1 or net in fitted_elsewhere or len(pins_anywhere.get(net, ())) > 1:
+    alone: dict[str, Pin | None] = {}
+    for graph in site.graphs:
+        for net in graph.circuit.nets:
+            for pin in graph.on_net[net]:
+                known = alone.setdefault(net, pin)
+                if known is not None and (known.device.name, known.name) != (pin.device.name, pin.name):
+                    alone[net] = None
+    for net, only in alone.items():
+        if only is None or only.device.kind in _MARKS:
             continue
-        only = pins[0]
-        if net in site.graph.circuit.grounds and len(site.graph.circuit.grounds) == 1:
-            continue
-        yield Finding(
-            RULE.name,
-            RULE.level,
+        text = (
             f"net {net} has a single pin, {only.device.name}:{only.name}: join it to something, or write "
-            f"{only.name}:nc if it stays open on purpose",
-            net=net,
-            pin=only.name,
-            **about(only.device),
+            f"{only.name}:nc if it stays open on purpose"
         )
+        yield Finding(RULE.name, RULE.level, text, net=net, pin=only.name, **about(only.device))
 
 
-RULE = Rule("graph/single-pin-net", "warning", "structure", "a net with a single pin on it", find)
+RULE = Rule("graph/single-pin-net", "warning", "structure", "a net with a single pin on it", find, whole=True)

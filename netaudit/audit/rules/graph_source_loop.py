@@ -1,11 +1,25 @@
 """A loop of stiff branches with a supply in it.
 
-Stiff branches are supplies without ``R``, links and inductors without ``R``, closed switches and fuses of 0 ohm.  Around
-such a loop nothing limits the current: two supplies in parallel fight, a supply across a link is shorted.  Without a
-supply in the loop it is a note: the voltages are fine, but how the current shares between the branches is unknown.
+Stiff branches are supplies without ``R``, links and inductors without ``R``, closed switches and relay contacts without
+``R_on``, fuses without ``R``, resistors of 0 ohm.  Around such a loop nothing limits the current: two supplies in
+parallel fight over a difference of microvolts, a supply across a link is shorted.  Without a supply in the loop it is a
+note only: the voltages are fine, but how the current shares between the branches is unknown.
 
-    fails:  PS1 supply 12V +:A -:GND  and  PS2 supply 5V +:A -:GND
-    passes: PS2 supply 5V R=100mohm +:A -:GND
+Mend: give one of them the resistance that it has, or part them.
+
+Source: common practice (a loop of voltage sources contradicts itself or leaves its current open).
+
+A board that fails and one that passes, below ``netlist 1`` and ``ground GND``:
+
+    fails:
+        PS1 supply 12V +:A -:GND
+        PS2 supply 12V +:A -:GND
+        R1 resistor 1k 1:A 2:GND
+
+    passes:
+        PS1 supply 12V +:A -:GND
+        PS2 supply 12V R=100mohm sinks=1A +:A -:GND
+        R1 resistor 1k 1:A 2:GND
 """
 
 from __future__ import annotations
@@ -13,56 +27,66 @@ from __future__ import annotations
 from collections.abc import Iterable
 
 from netaudit.audit.rule import Rule, Site, about, listed
-from netaudit.circuit.graph import Islands, is_stiff
+from netaudit.circuit.graph import Graph, Islands, stiff_pairs
 from netaudit.devices.base import Device
 from netaudit.finding import Finding
 
+Tree = dict[str, list[tuple[str, Device]]]
+
 
 def find(site: Site) -> Iterable[Finding]:
-    graph = site.graph
+    shorted: dict[str, list[list[Device]]] = {}
+    for loop in _loops(site.graph):
+        supply = next((d for d in loop if d.kind == "supply"), None)
+        if supply is None:
+            names = listed(d.name for d in loop)
+            text = f"how the current shares between {names} is unknown: give them their resistances"
+            yield Finding(RULE.name, "note", text, **about(loop[0]))
+        else:
+            shorted.setdefault(supply.name, []).append(loop)
+    for loops in shorted.values():
+        supply = next(d for d in loops[0] if d.kind == "supply")
+        said = " and of ".join(listed(d.name for d in loop) for loop in loops[:3])
+        text = f"nothing limits the current around the loop of {said}: give one of them a resistance, or part them"
+        if loops == [[supply]]:
+            text = f"supply {supply.name} is shorted: both its pins are on net {supply.pins['+']}"
+        yield Finding(RULE.name, RULE.level, text, **about(supply))
+
+
+def _loops(graph: Graph) -> Iterable[list[Device]]:
+    """One loop for each stiff branch that closes one; supplies are laid first, so that a short shows the supply."""
     islands = Islands(graph.on_net)
-    tree: dict[str, list[tuple[str, Device]]] = {net: [] for net in graph.on_net}
-    stiff = [d for d in graph.circuit.devices if is_stiff(d)]
-    # supplies first: then a loop closed later by a link still shows the supply it shorts
-    for device in sorted(stiff, key=lambda d: d.kind != "supply"):
-        a, b = device.pins.values()
+    tree: Tree = {}
+    branches = [(d, a, b) for d in graph.circuit.devices for a, b in stiff_pairs(d)]
+    for device, pin_a, pin_b in sorted(branches, key=lambda branch: branch[0].kind != "supply"):
+        a, b = device.pins[pin_a], device.pins[pin_b]
         if a == b:
-            continue
-        if islands.find(a) == islands.find(b):
-            loop = [device, *_path(tree, a, b)]
-            yield _finding(loop)
+            if device.kind == "supply" and device.nominal("value", 0.0) != 0.0:
+                yield [device]
+        elif islands.find(a) == islands.find(b):
+            yield [device, *_path(tree, a, b)]
         else:
             islands.join(a, b)
-            tree[a].append((b, device))
-            tree[b].append((a, device))
+            tree.setdefault(a, []).append((b, device))
+            tree.setdefault(b, []).append((a, device))
 
 
-def _path(tree: dict[str, list[tuple[str, Device]]], start: str, goal: str) -> list[Device]:
+def _path(tree: Tree, start: str, goal: str) -> list[Device]:
     """The devices on the tree's path between two nets."""
     came: dict[str, tuple[str, Device] | None] = {start: None}
     waiting = [start]
-    while waiting:
+    while waiting and goal not in came:
         net = waiting.pop()
         for other, device in tree[net]:
             if other not in came:
                 came[other] = (net, device)
                 waiting.append(other)
     out: list[Device] = []
-    step = came.get(goal)
+    step = came[goal]
     while step is not None:
         out.append(step[1])
         step = came[step[0]]
     return out
-
-
-def _finding(loop: list[Device]) -> Finding:
-    supplies = [d for d in loop if d.kind == "supply"]
-    names = listed([d.name for d in loop])
-    if supplies:
-        text = f"nothing limits the current around the loop of {names}: give one of them a resistance, or part them"
-        return Finding(RULE.name, RULE.level, text, **about(supplies[0]))
-    text = f"how the current shares between {names} is unknown: give them their resistances"
-    return Finding(RULE.name, "note", text, **about(loop[0]))
 
 
 RULE = Rule("graph/source-loop", "error", "structure", "a loop of stiff branches with a supply in it", find)

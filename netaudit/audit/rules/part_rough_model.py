@@ -1,10 +1,22 @@
 """A model that is the material's default or a generic class, not the part's own.
 
-Its operating point is roughly right; a rating check near its limit is not to be trusted to the last tenth.  A row with
-data-sheet points replaces it.
+Its operating point is roughly right; a check near its limit is not to be trusted to the last tenth.
 
-    fails:  D1 diode material=silicon A:A K:K
-    passes: D1 diode part=DIODE-1A A:A K:K   with forward points in its row
+Mend: a row with two or three points of the data sheet (``forward``), or measured ones.
+
+Source: common practice.
+
+A board that fails and one that passes, below ``netlist 1`` and ``ground GND``:
+
+    fails:
+        PS1 supply 12V +:VIN -:GND
+        R1 resistor 1k 1:VIN 2:A
+        D1 diode material=silicon A:A K:GND
+
+    passes:
+        PS1 supply 12V +:VIN -:GND
+        R1 resistor 1k 1:VIN 2:A
+        D1 diode I_S=2.5nA n=1.75 A:A K:GND
 """
 
 from __future__ import annotations
@@ -17,7 +29,7 @@ from netaudit.finding import Finding
 
 def find(site: Site) -> Iterable[Finding]:
     for device in site.graph.circuit.devices:
-        if device.rough and not device.missing:
+        if device.rough and not device.missing and not device.covered:
             text = f"{device.name}: {device.rough}, not the part's own data"
             yield Finding(RULE.name, RULE.level, text, **about(device))
 
