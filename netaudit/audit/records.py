@@ -4,12 +4,15 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass, field
+from typing import TYPE_CHECKING
 
-from netaudit.audit.statistics import Plan, Sampled
-from netaudit.audit.worst import Proof
 from netaudit.circuit.circuit import Board
 from netaudit.finding import Finding, Level, rank
-from netaudit.solve.point import ModeResult
+
+if TYPE_CHECKING:
+    from netaudit.audit.statistics import Plan, Sampled
+    from netaudit.audit.worst import Proof
+    from netaudit.solve.point import ModeResult
 
 
 @dataclass(frozen=True)

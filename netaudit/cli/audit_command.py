@@ -9,7 +9,6 @@ from netaudit import __version__
 from netaudit.cli.common import add_fail_on, add_files, add_modes, each
 from netaudit.failure import InputError
 from netaudit.interface import LoadedBoard
-from netaudit.parts.policy import load_policy
 from netaudit.report.style import Style
 
 if TYPE_CHECKING:
@@ -68,6 +67,8 @@ def _plan(options: argparse.Namespace) -> Plan | None:
 
 
 def run(options: argparse.Namespace) -> int:
+    from netaudit.parts.policy import load_policy
+
     policy = load_policy(options.policy)
 
     def work(loaded: LoadedBoard, style: Style) -> tuple[int, dict[str, Any] | None, str]:

@@ -5,13 +5,14 @@ from __future__ import annotations
 import json
 import math
 from collections.abc import Mapping, Sequence
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
-from netaudit.audit.records import Audit, Stress
-from netaudit.audit.statistics import QUANTILES
 from netaudit.circuit.circuit import Board
 from netaudit.finding import Finding
-from netaudit.solve.point import ModeResult, Point
+
+if TYPE_CHECKING:
+    from netaudit.audit.records import Audit, Stress
+    from netaudit.solve.point import ModeResult, Point
 
 
 def dumps(value: Any) -> str:
@@ -76,6 +77,8 @@ def samples_record(audit: Audit) -> dict[str, Any] | None:
     """Statistics over drawn boards; None when none were drawn."""
     if audit.plan is None:
         return None
+    from netaudit.audit.statistics import QUANTILES
+
     rows = [
         {
             "device": s.device,

@@ -3,15 +3,18 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Iterable, Mapping, Sequence
+from typing import TYPE_CHECKING
 
-from netaudit.audit.records import Audit, Stress
 from netaudit.circuit.circuit import Board
 from netaudit.failure import printable
 from netaudit.finding import Finding
 from netaudit.quantities.write import engineering
 from netaudit.report.json_text import CAUTIONS
 from netaudit.report.style import Style, flow, table, wrapped
-from netaudit.solve.point import ModeResult, Point
+
+if TYPE_CHECKING:
+    from netaudit.audit.records import Audit, Stress
+    from netaudit.solve.point import ModeResult, Point
 
 _SHOWN_STRESSES = 25
 _SHOWN_NAMES = 12
