@@ -5,6 +5,7 @@ from __future__ import annotations
 import re
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass, replace
+from graphlib import CycleError, TopologicalSorter
 
 from netaudit.circuit.raw import RawDevice, sort_items
 from netaudit.devices import KINDS
@@ -20,6 +21,9 @@ from netaudit.syntax.statements import (
     Word,
 )
 from netaudit.syntax.suggest import closest
+
+#: a netlist that opens to more devices than this is a slip (blocks that multiply), and would fill the memory
+_MOST = 1_000_000
 
 _PARAMETER = re.compile(r"\$([A-Za-z_][A-Za-z0-9_]*)")
 
@@ -59,6 +63,7 @@ class Opener:
         """All devices, in the order of the netlist, depth first; with a stack of its own."""
         out = Opened([], [], [])
         top = Scope("", {}, {}, ())
+        self._check_size(statements)
         stack: list[Iterator[tuple[Statement, Scope]]] = [iter([(s, top) for s in statements])]
         while stack:
             found = next(stack[-1], None)
@@ -76,6 +81,29 @@ class Opener:
                 else:
                     out.devices.append(self._device(statement, scope))
         return out
+
+    def _check_size(self, statements: Sequence[Statement]) -> None:
+        """Raises InputError when the blocks would open to more devices than a board has; before any is opened."""
+        placed = {name: [s for s in b.body if isinstance(s, DeviceStatement)] for name, b in self.blocks.items()}
+        within = {name: {s.kind.text for s in body} & placed.keys() for name, body in placed.items()}
+        try:
+            order = list(TopologicalSorter(within).static_order())
+        except CycleError:
+            # a block within itself has a message of its own when it is opened
+            return
+        sizes: dict[str, int] = {}
+        for name in order:
+            sizes[name] = sum(sizes.get(s.kind.text, 1) for s in placed[name])
+        total = 0
+        for statement in statements:
+            if isinstance(statement, DeviceStatement):
+                total += sizes.get(statement.kind.text, 1)
+                if total > _MOST:
+                    raise InputError(
+                        f"{statement.designator.text}: the netlist opens to more than {_MOST:,} devices",
+                        place=statement.place,
+                        mend="place fewer blocks within blocks",
+                    )
 
     def _inside(self, statement: DeviceStatement, scope: Scope) -> list[tuple[Statement, Scope]]:
         block = self.blocks[statement.kind.text]
@@ -138,7 +166,7 @@ class Opener:
         return RawDevice(name, kind, sort_items(name, kind, items), nets, statement.place)
 
     def _items(self, items: Items, scope: Scope) -> Items:
-        if not scope.parameters:
+        if not scope.prefix:
             return items
         words = tuple(self._filled(w, scope) for w in items.words)
         keys = tuple(KeyItem(k.key, self._filled(k.value, scope)) for k in items.keys)

@@ -194,7 +194,7 @@ class Elaboration:
 
     def _modes(self) -> list[_Mode]:
         modes: dict[str, _Mode] = {}
-        if not self.netlist.only_modes:
+        if self.netlist.only_modes is None:
             modes["normal"] = _Mode("normal")
         written: set[str] = set()
         for s in self.netlist.statements:
@@ -205,7 +205,8 @@ class Elaboration:
             written.add(s.name.text)
             modes[s.name.text] = _Mode(s.name.text, list(s.changes), s.place)
         if not modes:
-            raise InputError("only modes, but no mode is defined", mend="add a mode, or leave out `only modes`")
+            place = self.netlist.only_modes
+            raise InputError("only modes, but no mode is defined", place=place, mend="add a mode, or remove this line")
         return list(modes.values())
 
     def _applied(self, changes: Iterable[ChangeStatement], state: _State) -> None:

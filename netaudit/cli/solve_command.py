@@ -1,4 +1,8 @@
-"""``netaudit solve``."""
+"""``netaudit solve``.
+
+Voltages of a part of the circuit without a reference are defined up to a constant only: that structural finding is
+repeated here, since numbers would hide it.
+"""
 
 from __future__ import annotations
 
@@ -15,7 +19,8 @@ def add(commands: Any) -> None:
     command = commands.add_parser(
         "solve",
         help="operating points at nominal values",
-        description="Finds the operating points of every mode at nominal values. Exit status 1 when a mode has none.",
+        description="Finds the operating points of every mode at nominal values. Exit status 1 when a mode "
+        "has none, or when nets have no reference.",
         allow_abbrev=False,
     )
     add_files(command)
@@ -27,13 +32,14 @@ def add(commands: Any) -> None:
 def run(options: argparse.Namespace) -> int:
     def work(loaded: LoadedBoard, style: Style) -> tuple[int, dict[str, Any] | None, str]:
         results = loaded.solve(options.modes)
-        status = int(any(not r.points for r in results))
+        findings = [f for f in loaded.lint() if f.rule == "graph/unreferenced-net" and f.level == "error"]
+        status = int(bool(findings) or any(not r.points for r in results))
         if options.format == "json":
             from netaudit.report.json_text import solve_record
 
-            return status, solve_record(loaded.board, results, __version__), ""
+            return status, solve_record(loaded.board, results, findings, __version__), ""
         from netaudit.report.text import solve_text
 
-        return status, None, solve_text(loaded.board, results, style, __version__)
+        return status, None, solve_text(loaded.board, results, findings, style, __version__)
 
     return each(options, "solve", work)

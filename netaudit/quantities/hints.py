@@ -76,7 +76,8 @@ def _unit(text: str, unit: str) -> tuple[str, str]:
     said = shown(text)
     if not rest or (unit in ("degC", "K") and rest in PREFIXES):
         return f"{said} has no unit", f"{wanted.meaning} needs one, as in {wanted.example}"
-    better = _respelled(rest, unit)
+    others = measures(rest)
+    better = () if others else _respelled(rest, unit)
     if better:
         why = "unit and prefix are case-sensitive (m is milli, M is mega, k is kilo)"
         return f"{said}: {shown(rest)} is not a unit", f"write {' or '.join(number + b for b in better)}; {why}"[:160]
@@ -84,7 +85,6 @@ def _unit(text: str, unit: str) -> tuple[str, str]:
         return f"{said} is a temperature where a difference is expected", f"write {number}K"
     if rest.startswith(("degC/", "°C/")) or rest.endswith(("/degC", "/°C")):
         return f"{said}: a difference of temperatures is in K", f"write {number}{re.sub('degC|°C', 'K', rest)}"
-    others = measures(rest)
     if others:
         return f"{said} is {UNITS[others[0]].meaning} where {wanted.meaning} is expected", f"as in {wanted.example}"
     return f"{said}: {shown(rest)} is not a unit of {wanted.meaning}", f"write it as in {wanted.example}"

@@ -148,12 +148,16 @@ def audit_record(audit: Audit, failed: bool, version: str) -> dict[str, Any]:
     }
 
 
-def solve_record(board: Board, results: Sequence[ModeResult], version: str) -> dict[str, Any]:
+def solve_record(
+    board: Board, results: Sequence[ModeResult], findings: Sequence[Finding], version: str
+) -> dict[str, Any]:
+    """``findings``: what makes the voltages meaningless."""
     return {
         "schema": "netaudit/solve/1",
         "netlist": board.name,
         "version": version,
         "modes": [_mode_record(r) for r in results],
+        "findings": [finding_record(f) for f in findings],
         "files": dict(board.files),
     }
 

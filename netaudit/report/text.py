@@ -194,9 +194,14 @@ def _uniqueness(result: ModeResult) -> str:
     return f"Mode {result.mode}: {points}, {result.uniqueness}: {result.because}."
 
 
-def solve_text(board: Board, results: Sequence[ModeResult], style: Style, version: str) -> str:
+def solve_text(
+    board: Board, results: Sequence[ModeResult], findings: Sequence[Finding], style: Style, version: str
+) -> str:
     title = [printable(board.title)] if board.title else []
     lines = flow([printable(f"operating points of {board.name}"), *title], style.width)
+    for finding in findings:
+        said = f"error: {finding.message}. Until then these voltages hold up to a constant only."
+        lines += wrapped(said, style.width, "")
     for result in results:
         lines += ["", *wrapped(_uniqueness(result), style.width, "")]
         if result.failure:

@@ -37,7 +37,7 @@ class _Reading:
     root: str
     statements: list[Statement] = field(default_factory=list)
     files: dict[str, str] = field(default_factory=dict)
-    only_modes: bool = False
+    only_modes: Place | None = None
     designators: dict[str, Place] = field(default_factory=dict)
     named: dict[tuple[str, str], Place] = field(default_factory=dict)
 
@@ -161,7 +161,7 @@ def _mark(
             mend="close it with: end",
         )
     elif mark.word == "only":
-        reading.only_modes = True
+        reading.only_modes = mark.place
     elif mark.word == "include":
         _include(mark, reading, chain, above)
 

@@ -201,11 +201,12 @@ class Netlist:
     """A file and all that it includes, in the order of reading.
 
     ``name`` is the path as the user wrote it; ``files`` maps every file read (netlists, later part tables) to the
-    SHA-256 of its content, ``root`` is the folder below which included files must stay.
+    SHA-256 of its content, ``root`` is the folder below which included files must stay; ``only_modes`` is the place of
+    that statement, None without it.
     """
 
     name: str
     root: str
     statements: tuple[Statement, ...]
-    only_modes: bool = False
+    only_modes: Place | None = None
     files: Mapping[str, str] = field(default_factory=dict)

@@ -76,7 +76,7 @@ def test_stresses_stand_worst_first(board: netaudit.interface.LoadedBoard) -> No
 
 
 def test_solve_has_every_field_of_the_contract(board: netaudit.interface.LoadedBoard) -> None:
-    record = back(solve_record(board.board, board.solve(), "1"))
+    record = back(solve_record(board.board, board.solve(), (), "1"))
     assert record["schema"] == "netaudit/solve/1"
     (mode,) = record["modes"]
     assert mode["mode"] == "normal"

@@ -69,7 +69,7 @@ def test_sentences_and_tables_keep_to_the_width(board: netaudit.interface.Loaded
     for text in (
         lint_text(board.board, board.lint(), False, style, True),
         audit_text(board.audit(), True, style, True, "1"),
-        solve_text(board.board, board.solve(), style, "1"),
+        solve_text(board.board, board.solve(), (), style, "1"),
     ):
         wide = [line for line in text.splitlines() if columns_of(line) > width]
         assert wide == []
@@ -103,7 +103,7 @@ def test_names_cannot_command_the_terminal() -> None:
 
 
 def test_solve_shows_nets_and_pins(board: netaudit.interface.LoadedBoard) -> None:
-    text = solve_text(board.board, board.solve(["normal"]), Style(), "1")
+    text = solve_text(board.board, board.solve(["normal"]), (), Style(), "1")
     assert re.search(r"^V +12 V$", text, re.MULTILINE)
     assert re.search(r"^R1 +resistor +1 120 mA +2 -120 mA +1\.44 W +25 degC$", text, re.MULTILINE)
     assert "Mode normal: one operating point" in text
@@ -114,5 +114,5 @@ def test_solve_says_that_a_part_runs_away() -> None:
         "netlist 1\nground GND\nPS1 supply 25V +:V -:GND\nR1 resistor 100R 1:V 2:T\n"
         "R2 thermistor 10k B=3950K R_th_ja=250K/W 1:T 2:GND\n"
     )
-    text = " ".join(solve_text(board.board, board.solve(), Style(), "1").split())
+    text = " ".join(solve_text(board.board, board.solve(), (), Style(), "1").split())
     assert "error: R2 runs away thermally" in text
