@@ -11,7 +11,19 @@ import pytest
 
 ROOT = Path(__file__).parent.parent
 PACKAGE = ROOT / "netaudit"
-ROOMS = ["quantities", "syntax", "parts", "devices", "circuit", "solve", "audit", "report", "interface", "cli"]
+ROOMS = [
+    "quantities",
+    "syntax",
+    "project",
+    "parts",
+    "devices",
+    "circuit",
+    "solve",
+    "audit",
+    "report",
+    "interface",
+    "cli",
+]
 HEAVY = {"scipy", "networkx", "rich"}
 TOP = {"README.md", "DEVELOPERS.md", "pyproject.toml", "netaudit", "grammar", "tests", "sample_netlists", "LICENSE"}
 FILES = sorted(PACKAGE.rglob("*.py"))

@@ -8,7 +8,11 @@ from dataclasses import replace
 from netaudit.circuit.circuit import Board
 from netaudit.circuit.elaborate import elaborate
 from netaudit.failure import InputError
+from netaudit.parts.tables import PartTable, read_table
 from netaudit.place import Place
+from netaudit.project.globs import named_files
+from netaudit.project.project import Project
+from netaudit.project.read import project_at
 from netaudit.syntax.collector import collector_paused
 from netaudit.syntax.lines import logical_lines
 from netaudit.syntax.parse import Parser
@@ -19,10 +23,24 @@ from netaudit.syntax.statements import ModeStatement, Netlist, SetStatement
 def load_board(path: str, root: str | None = None, changes: Sequence[str] = ()) -> Board:
     """Reads a netlist with everything it includes.  Raises InputError for anything that cannot be used.
 
-    ``changes`` are settings such as ``R1=1k`` or ``S1=open`` that hold in every mode, after the modes' own.
+    ``changes`` are settings such as ``R1=1k`` or ``S1=open`` that hold in every mode, after the modes' own.  A
+    ``netaudit.toml`` at the project's root adds its part tables.
     """
     with collector_paused():
-        return elaborate(with_changes(read_netlist(path, root=root), changes))
+        netlist = with_changes(read_netlist(path, root=root), changes)
+        project = project_at(netlist.root)
+        if project is None:
+            return elaborate(netlist)
+        board = elaborate(netlist, project_table(project))
+        return replace(board, files={**board.files, project.file: project.sha256})
+
+
+def project_table(project: Project) -> PartTable:
+    """The part tables that every board of a project reads before its own."""
+    table = PartTable()
+    for name in named_files(project, "parts", project.parts):
+        table = table.merge(read_table(project.path(name), place=project.place("parts")))
+    return table
 
 
 def load_text(text: str, name: str = "netlist", changes: Sequence[str] = ()) -> Board:

@@ -10,15 +10,23 @@ import sys
 from collections.abc import Callable, Iterable, Sequence
 from typing import Any
 
+from netaudit.cli.settings import Target
 from netaudit.failure import InputError, printable
 from netaudit.finding import LEVELS
 from netaudit.interface import LoadedBoard
+from netaudit.project.project import Project
 from netaudit.report.style import Style
+
+#: a switch that a project may have on: ``--nominal`` and ``--no-nominal``
+FLAG = argparse.BooleanOptionalAction
 
 
 def add_files(command: argparse.ArgumentParser) -> None:
     command.add_argument(
-        "files", nargs="+", metavar="NETLIST", help="netlist file; several are done one after the other"
+        "files",
+        nargs="*",
+        metavar="NETLIST",
+        help="netlist file; several are done one after the other; none: the boards that netaudit.toml names",
     )
     command.add_argument("--root", metavar="FOLDER", help="project root: nothing outside it is read")
     command.add_argument(
@@ -42,11 +50,11 @@ def add_modes(command: argparse.ArgumentParser) -> None:
 
 
 def add_fail_on(command: argparse.ArgumentParser) -> None:
-    command.add_argument("--fail-on", choices=LEVELS, default="error", help="exit with 1 at this level or above")
+    command.add_argument("--fail-on", choices=LEVELS, help="exit with 1 at this level or above (default: error)")
     command.add_argument("--notes", action="store_true", help="show every note in full")
 
 
-def _shown(files: Sequence[str]) -> Iterable[str]:
+def _shown(files: Sequence[Target]) -> Iterable[Target]:
     """The files, with a progress bar on stderr where that is a terminal and there are several."""
     if len(files) < 2 or not sys.stderr.isatty():
         return files
@@ -57,25 +65,29 @@ def _shown(files: Sequence[str]) -> Iterable[str]:
 
 
 def each(
-    options: argparse.Namespace, kind: str, work: Callable[[LoadedBoard, Style], tuple[int, dict[str, Any] | None, str]]
+    options: argparse.Namespace,
+    kind: str,
+    work: Callable[[LoadedBoard, Style, Project | None], tuple[int, dict[str, Any] | None, str]],
+    files: Sequence[Target],
 ) -> int:
     """Does one file after the other; a broken one does not hide the others.  The status is the highest of all.
 
-    ``work`` gives the status, the JSON record and the text of one board.
+    ``work`` gives the status, the JSON record and the text of one board, by its project if it has one.
     """
     style = Style.for_stream(sys.stdout.isatty() and options.output is None)
-    several = len(options.files) > 1
+    several = len(files) > 1
     records: list[dict[str, Any]] = []
     texts: list[str] = []
     status = 0
-    for path in _shown(options.files):
+    for target in _shown(files):
         try:
-            result, record, text = work(LoadedBoard.from_file(path, options.root, options.changes), style)
+            loaded = LoadedBoard.from_file(target.path, target.root, options.changes)
+            result, record, text = work(loaded, style, target.project)
         except InputError as error:
             if not several:
                 raise
             refuse(error)
-            result, record, text = 2, {"netlist": path, "error": str(error)}, f"{error}\n"
+            result, record, text = 2, {"netlist": target.path, "error": str(error)}, f"{error}\n"
         status = max(status, result)
         records.append(record or {})
         texts.append(text)

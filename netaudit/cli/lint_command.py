@@ -7,8 +7,10 @@ from typing import Any
 
 from netaudit import __version__
 from netaudit.cli.common import add_fail_on, add_files, each
+from netaudit.cli.settings import fail_on, targets
 from netaudit.finding import rank
 from netaudit.interface import LoadedBoard
+from netaudit.project.project import Project
 from netaudit.report.style import Style
 
 
@@ -25,9 +27,9 @@ def add(commands: Any) -> None:
 
 
 def run(options: argparse.Namespace) -> int:
-    def work(loaded: LoadedBoard, style: Style) -> tuple[int, dict[str, Any] | None, str]:
+    def work(loaded: LoadedBoard, style: Style, project: Project | None) -> tuple[int, dict[str, Any] | None, str]:
         findings = loaded.lint()
-        failed = any(rank(f.level) >= rank(options.fail_on) for f in findings)
+        failed = any(rank(f.level) >= rank(fail_on(options, project)) for f in findings)
         if options.format == "json":
             from netaudit.report.json_text import lint_record
 
@@ -36,4 +38,4 @@ def run(options: argparse.Namespace) -> int:
 
         return int(failed), None, lint_text(loaded.board, findings, failed, style, options.notes)
 
-    return each(options, "lint", work)
+    return each(options, "lint", work, targets(options))

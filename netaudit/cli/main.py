@@ -17,6 +17,7 @@ from netaudit.cli import (
     convert_command,
     explain_command,
     fit_command,
+    init_command,
     lint_command,
     parts_command,
     size_command,
@@ -46,6 +47,7 @@ _COMMANDS = (
     fit_command,
     convert_command,
     parts_command,
+    init_command,
 )
 
 

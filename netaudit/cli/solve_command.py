@@ -11,7 +11,9 @@ from typing import Any
 
 from netaudit import __version__
 from netaudit.cli.common import add_files, add_modes, each
+from netaudit.cli.settings import targets
 from netaudit.interface import LoadedBoard
+from netaudit.project.project import Project
 from netaudit.report.style import Style
 
 
@@ -30,7 +32,7 @@ def add(commands: Any) -> None:
 
 
 def run(options: argparse.Namespace) -> int:
-    def work(loaded: LoadedBoard, style: Style) -> tuple[int, dict[str, Any] | None, str]:
+    def work(loaded: LoadedBoard, style: Style, project: Project | None) -> tuple[int, dict[str, Any] | None, str]:
         results = loaded.solve(options.modes)
         findings = [f for f in loaded.lint() if f.rule == "graph/unreferenced-net" and f.level == "error"]
         status = int(bool(findings) or any(not r.points for r in results))
@@ -42,4 +44,4 @@ def run(options: argparse.Namespace) -> int:
 
         return status, None, solve_text(loaded.board, results, findings, style, __version__)
 
-    return each(options, "solve", work)
+    return each(options, "solve", work, targets(options))

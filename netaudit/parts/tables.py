@@ -69,7 +69,7 @@ def read_table(path: str, named: str | None = None, place: Place | None = None) 
         line = data[: error.start].count(b"\n") + 1
         raise InputError("the part table is not UTF-8", place=Place(shown, line), mend="save it as UTF-8") from None
     rows = _csv_rows(text, shown) if shown.lower().endswith(".csv") else _toml_rows(text, shown)
-    return PartTable(rows, {shown: hashlib.sha256(data).hexdigest()})
+    return PartTable(rows, {path: hashlib.sha256(data).hexdigest()})
 
 
 @cache

@@ -1,0 +1,102 @@
+"""What a command works on: the files it was given or the project's boards, and settings from both, the command's first."""
+
+from __future__ import annotations
+
+import argparse
+import os
+from collections.abc import Callable
+from dataclasses import dataclass
+from typing import TYPE_CHECKING, Any
+
+from netaudit.failure import InputError
+from netaudit.finding import Level
+from netaudit.project.globs import named_files
+from netaudit.project.project import FILE_NAME, Project
+from netaudit.project.read import find_project, project_at
+from netaudit.syntax.paths import project_root
+
+if TYPE_CHECKING:
+    from netaudit.audit.statistics import Plan
+
+
+@dataclass(frozen=True)
+class Target:
+    """A netlist to work on: its path as the user would name it, the root given for it, and its project if it has one."""
+
+    path: str
+    root: str | None
+    project: Project | None
+
+
+def targets(options: argparse.Namespace) -> tuple[Target, ...]:
+    """The files named on the command line, or every board of the project that the current folder belongs to."""
+    if options.files:
+        projects: dict[str, Project | None] = {}
+        return tuple(_target(path, options.root, projects) for path in options.files)
+    project = project_of(options.root, "name a NETLIST")
+    if not project.boards:
+        raise InputError(f"{project.file} names no boards", mend='add boards = ["boards/*.netlist"], or name a NETLIST')
+    root = project.folder
+    return tuple(Target(project.path(name), root, project) for name in named_files(project, "boards", project.boards))
+
+
+def _target(path: str, root: str | None, projects: dict[str, Project | None]) -> Target:
+    folder = project_root(path, root)
+    if folder not in projects:
+        projects[folder] = project_at(folder)
+    return Target(path, root, projects[folder])
+
+
+def project_of(root: str | None, instead: str) -> Project:
+    """The project of a folder (the current one); InputError, with what to do instead, when there is none."""
+    project = find_project(os.curdir) if root is None else project_at(root)
+    if project is None:
+        where = "in this folder or above it" if root is None else f"in {root}"
+        raise InputError(f"no {FILE_NAME} stands {where}", mend=f"{instead}, or write one with: netaudit init")
+    return project
+
+
+def stated(given: Any, project: Project | None, of: Callable[[Project], Any], otherwise: Any) -> Any:
+    """The command line's value, else the project's, else what holds without both."""
+    if given is not None:
+        return given
+    return of(project) if project is not None else otherwise
+
+
+def fail_on(options: argparse.Namespace, project: Project | None) -> Level:
+    found: Level = stated(options.fail_on, project, lambda p: p.fail_on, "error")
+    return found
+
+
+def require_complete(options: argparse.Namespace, project: Project | None) -> bool:
+    found: bool = stated(options.require_complete, project, lambda p: p.require_complete, False)
+    return found
+
+
+def policy_name(options: argparse.Namespace, project: Project | None) -> str:
+    found: str = stated(options.policy, project, lambda p: p.policy, "none")
+    return found
+
+
+def nominal(options: argparse.Namespace, project: Project | None) -> bool:
+    found: bool = stated(options.nominal, project, lambda p: p.corners.values == "nominal", False)
+    return found
+
+
+def plan_of(options: argparse.Namespace, project: Project | None) -> Plan | None:
+    """The boards to draw; None for none.  Raises InputError for a count that cannot be meant."""
+    from netaudit.audit.statistics import Plan
+
+    count: int = stated(options.samples, project, lambda p: p.corners.samples, 0)
+    if count < 0 or count > 10_000_000:
+        raise InputError(f"--samples {count}", mend="between 0 and 10000000")
+    if not count:
+        return None
+    pairs = tuple(tuple(group.split(",")) for group in options.together) or None
+    return Plan(
+        count,
+        stated(options.seed, project, lambda p: p.corners.seed, 1),
+        stated(options.sequence, project, lambda p: p.corners.sequence, "sobol"),
+        stated(options.distribution, project, lambda p: p.corners.distribution, "uniform"),
+        stated(pairs, project, lambda p: p.corners.together, ()),
+    )
