@@ -16,12 +16,21 @@ def rank(level: Level) -> int:
 
 
 @dataclass(frozen=True)
+class Waived:
+    """That a reviewed waiver covers a finding: why, and what the waiver refers to."""
+
+    reason: str
+    reference: str = ""
+    until: str = ""
+
+
+@dataclass(frozen=True)
 class Finding:
     """A rule that spoke, with everything needed to understand it without the netlist at hand.
 
     ``value``, ``limit`` and ``rating`` are in ``unit`` (SI; temperatures in degC); ``corner`` maps designators,
     ``ambient`` and names like ``D2.V_Z`` to the values (user's units, SI) at which the finding is worst.
-    ``ratio`` is value / limit where that has a meaning.
+    ``ratio`` is value / limit where that has a meaning.  A finding that is ``waived`` stays visible and does not count.
     """
 
     rule: str
@@ -41,3 +50,4 @@ class Finding:
     line: int | None = None
     ratio: float | None = None
     variant: str | None = None
+    waived: Waived | None = None

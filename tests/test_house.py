@@ -22,6 +22,7 @@ ROOMS = [
     "audit",
     "report",
     "interface",
+    "gate",
     "cli",
 ]
 HEAVY = {"scipy", "networkx", "rich"}

@@ -12,6 +12,7 @@ from netaudit.audit.expectation import expectation_tasks
 from netaudit.audit.feeding import upstream
 from netaudit.audit.lint import ordered, structural
 from netaudit.audit.package import package_devices, package_tasks
+from netaudit.audit.part_rows import part_rows
 from netaudit.audit.points import point_tasks
 from netaudit.audit.records import Audit, SampledStress, Stress
 from netaudit.audit.statistics import Plan, sample
@@ -103,6 +104,7 @@ def _joined(board: Board, audits: Sequence[ModeAudit], options: Options) -> Audi
         {key: unit for one in audits for key, unit in one.units.items()},
         options.plan,
         tuple(s for one in audits for s in one.samples),
+        part_rows(board),
     )
 
 

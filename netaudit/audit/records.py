@@ -72,6 +72,23 @@ class SampledStress:
 
 
 @dataclass(frozen=True)
+class PartRow:
+    """A part as reports and comparisons need it, from the first mode in which it is fitted.
+
+    ``part`` is the part number (empty when none is named), ``items`` its value, state, keys and ratings as text,
+    ``pins`` its nets (None where a pin is left open).
+    """
+
+    name: str
+    kind: str
+    part: str
+    items: Mapping[str, str]
+    pins: Mapping[str, str | None]
+    file: str
+    line: int
+
+
+@dataclass(frozen=True)
 class Audit:
     """The audit of one board.
 
@@ -92,8 +109,9 @@ class Audit:
     units: Mapping[str, str] = field(default_factory=dict)
     plan: Plan | None = None
     samples: tuple[SampledStress, ...] = ()
+    parts: tuple[PartRow, ...] = ()
 
     def fails(self, level: Level = "error", require_complete: bool = False) -> bool:
         """Whether something stands at or above the level, or is missing where completeness is required."""
-        worst = max((rank(f.level) for f in self.findings), default=-1)
+        worst = max((rank(f.level) for f in self.findings if f.waived is None), default=-1)
         return worst >= rank(level) or (require_complete and not self.complete)

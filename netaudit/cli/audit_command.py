@@ -3,14 +3,18 @@
 from __future__ import annotations
 
 import argparse
-from typing import Any
+import sys
+from typing import TYPE_CHECKING, Any
 
 from netaudit import __version__
-from netaudit.cli.common import FLAG, add_fail_on, add_files, add_modes, each
-from netaudit.cli.settings import fail_on, nominal, plan_of, policy_name, require_complete, targets
-from netaudit.interface import LoadedBoard
-from netaudit.project.project import Project
+from netaudit.cli.common import FLAG, add_fail_on, add_files, add_modes, complain, deliver, shown
+from netaudit.cli.reports import add_reports, wanted, write_reports
+from netaudit.cli.settings import Target, fail_on, nominal, plan_of, policy_name, require_complete, targets
 from netaudit.report.style import Style
+
+if TYPE_CHECKING:
+    from netaudit.audit.batch import Batch, BoardResult
+    from netaudit.gate.job import Job
 
 
 def add(commands: Any) -> None:
@@ -23,6 +27,7 @@ def add(commands: Any) -> None:
     add_files(command)
     add_modes(command)
     add_fail_on(command)
+    add_reports(command)
     command.add_argument(
         "--nominal", action=FLAG, help="nominal values only: no ranges, no tolerances (default: worst case)"
     )
@@ -52,21 +57,58 @@ def add(commands: Any) -> None:
 
 
 def run(options: argparse.Namespace) -> int:
+    from netaudit.audit.batch import Batch
+    from netaudit.gate.run import run_jobs
     from netaudit.parts.policy import load_policy
 
-    files = targets(options)
-    policies = {name: load_policy(name) for name in {policy_name(options, f.project) for f in files}}
+    reports = wanted(options.reports)
+    jobs = tuple(_job(target, options) for target in targets(options))
+    for name in {job.policy for job in jobs}:
+        # a policy that is not there is said once, before anything is solved
+        load_policy(name)
+    results: list[BoardResult] = []
+    for result in shown(run_jobs(jobs), len(jobs)):
+        results.append(result)
+        if result.audit is None:
+            complain(result.error, result.place)
+    batch = Batch(tuple(results), __version__)
+    text = write_reports(reports, batch) if reports else ""
+    if len(jobs) > 1 or results[0].audit is not None:
+        text = text or _text(options, batch)
+    if text:
+        deliver(text, options.output)
+    return max((2 if r.audit is None else int(r.failed) for r in results), default=0)
 
-    def work(loaded: LoadedBoard, style: Style, project: Project | None) -> tuple[int, dict[str, Any] | None, str]:
-        policy = policies[policy_name(options, project)]
-        audit = loaded.audit(policy, nominal(options, project), options.modes, plan_of(options, project))
-        failed = audit.fails(fail_on(options, project), require_complete(options, project))
-        if options.format == "json":
-            from netaudit.report.json_text import audit_record
 
-            return int(failed), audit_record(audit, failed, __version__), ""
-        from netaudit.report.text import audit_text
+def _job(target: Target, options: argparse.Namespace) -> Job:
+    from netaudit.gate.job import Job
 
-        return int(failed), None, audit_text(audit, failed, style, options.notes, __version__)
+    project = target.project
+    return Job(
+        target.path,
+        target.root,
+        tuple(options.changes),
+        policy_name(options, project),
+        nominal(options, project),
+        tuple(options.modes),
+        plan_of(options, project),
+        fail_on(options, project),
+        require_complete(options, project),
+    )
 
-    return each(options, "audit", work, files)
+
+def _text(options: argparse.Namespace, batch: Batch) -> str:
+    """What goes to stdout when no report does."""
+    if options.format == "json":
+        from netaudit.report.json_report import render
+
+        return render(batch)
+    from netaudit.report.text import audit_text
+
+    style = Style.for_stream(sys.stdout.isatty() and options.output is None)
+    return "\n".join(
+        f"{board.error}\n"
+        if board.audit is None
+        else audit_text(board.audit, board.failed, style, options.notes, __version__)
+        for board in batch.boards
+    )

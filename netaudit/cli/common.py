@@ -3,20 +3,21 @@
 from __future__ import annotations
 
 import argparse
-import contextlib
 import io
 import os
 import sys
 from collections.abc import Callable, Iterable, Sequence
-from typing import Any
+from typing import Any, TypeVar
 
 from netaudit.cli.settings import Target
 from netaudit.failure import InputError, printable
 from netaudit.finding import LEVELS
 from netaudit.interface import LoadedBoard
+from netaudit.place import Place
 from netaudit.project.project import Project
 from netaudit.report.style import Style
 
+Item = TypeVar("Item")
 #: a switch that a project may have on: ``--nominal`` and ``--no-nominal``
 FLAG = argparse.BooleanOptionalAction
 
@@ -54,14 +55,14 @@ def add_fail_on(command: argparse.ArgumentParser) -> None:
     command.add_argument("--notes", action="store_true", help="show every note in full")
 
 
-def _shown(files: Sequence[Target]) -> Iterable[Target]:
-    """The files, with a progress bar on stderr where that is a terminal and there are several."""
-    if len(files) < 2 or not sys.stderr.isatty():
-        return files
+def shown(items: Iterable[Item], count: int) -> Iterable[Item]:
+    """The items, with a progress bar on stderr where that is a terminal and there are several."""
+    if count < 2 or not sys.stderr.isatty():
+        return items
     from rich.console import Console
     from rich.progress import track
 
-    return track(files, description="boards", console=Console(stderr=True), transient=True)
+    return track(items, description="boards", total=count, console=Console(stderr=True), transient=True)
 
 
 def each(
@@ -79,7 +80,7 @@ def each(
     records: list[dict[str, Any]] = []
     texts: list[str] = []
     status = 0
-    for target in _shown(files):
+    for target in shown(files, len(files)):
         try:
             loaded = LoadedBoard.from_file(target.path, target.root, options.changes)
             result, record, text = work(loaded, style, target.project)
@@ -106,15 +107,9 @@ def deliver(text: str, path: str | None) -> None:
     if path is None:
         _to_stdout(text)
         return
-    temporary = f"{path}.{os.getpid()}.part"
-    try:
-        with open(temporary, "w", encoding="utf-8", newline="\n") as stream:
-            stream.write(text)
-        os.replace(temporary, path)
-    except OSError as error:
-        with contextlib.suppress(OSError):
-            os.unlink(temporary)
-        raise InputError(f"{path} cannot be written: {error.strerror}", mend="choose another -o") from None
+    from netaudit.cli.reports import replace_files
+
+    replace_files([(path, text)])
 
 
 def _to_stdout(text: str) -> None:
@@ -138,7 +133,12 @@ def abandon_stdout() -> None:
 
 def refuse(error: InputError) -> int:
     """One line on stderr; the source line with a caret follows only on a terminal."""
-    print(str(error), file=sys.stderr)
-    if error.place is not None and sys.stderr.isatty() and error.place.caret():
-        print("\n".join(printable(line) for line in error.place.caret().split("\n")), file=sys.stderr)
+    complain(str(error), error.place)
     return 2
+
+
+def complain(text: str, place: Place | None) -> None:
+    """The line of an error, on a terminal with its source below."""
+    print(text, file=sys.stderr)
+    if place is not None and sys.stderr.isatty() and place.caret():
+        print("\n".join(printable(line) for line in place.caret().split("\n")), file=sys.stderr)

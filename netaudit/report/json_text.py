@@ -8,10 +8,10 @@ from collections.abc import Mapping, Sequence
 from typing import TYPE_CHECKING, Any
 
 from netaudit.circuit.circuit import Board
-from netaudit.finding import Finding
+from netaudit.finding import Finding, Waived
 
 if TYPE_CHECKING:
-    from netaudit.audit.records import Audit, Stress
+    from netaudit.audit.records import Audit, PartRow, Stress
     from netaudit.solve.point import ModeResult, Point
 
 
@@ -50,6 +50,24 @@ def finding_record(f: Finding) -> dict[str, Any]:
         "file": f.file,
         "line": f.line,
         "message": f.message,
+        "waived": waived_record(f.waived),
+    }
+
+
+def waived_record(waived: Waived | None) -> dict[str, str] | None:
+    """Why a reviewed waiver covers a finding."""
+    return None if waived is None else {"reason": waived.reason, "reference": waived.reference, "until": waived.until}
+
+
+def part_record(part: PartRow) -> dict[str, Any]:
+    return {
+        "device": part.name,
+        "kind": part.kind,
+        "part": part.part or None,
+        "items": dict(part.items),
+        "pins": dict(part.pins),
+        "file": part.file,
+        "line": part.line,
     }
 
 
@@ -141,6 +159,7 @@ def audit_record(audit: Audit, failed: bool, version: str) -> dict[str, Any]:
             {"mode": r.mode, "uniqueness": r.uniqueness, "because": r.because, "points": len(r.points)}
             for r in audit.results
         ],
+        "parts": [part_record(part) for part in audit.parts],
         "generic": list(audit.generic),
         "without_policy_row": list(audit.without_row),
         "files": dict(audit.board.files),

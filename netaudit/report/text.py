@@ -23,7 +23,7 @@ _SHOWN_CORNER = 5
 
 def findings_text(findings: Sequence[Finding], style: Style, notes: bool) -> Iterable[str]:
     """One sentence a finding, the same thing in several modes once; notes of one rule folded unless asked for."""
-    loud = [f for f in findings if f.level != "note" or notes]
+    loud = [f for f in findings if (f.level != "note" or notes) and f.waived is None]
     for group in _grouped(loud, _thing):
         f = group[0]
         where = f"{f.file}:{f.line}" if f.file and f.line else (f.file or "")
@@ -31,7 +31,7 @@ def findings_text(findings: Sequence[Finding], style: Style, notes: bool) -> Ite
         shown = [f"[{printable(', '.join(modes))}]"] if modes and modes != ["normal"] else []
         yield from flow([f"{style.level(f.level)} {f.rule}", *shown, style.faint(printable(where))], style.width)
         yield from wrapped(f.message, style.width, "    ")
-    quiet = [f for f in findings if f.level == "note" and not notes]
+    quiet = [f for f in findings if f.level == "note" and not notes and f.waived is None]
     for group in _grouped(quiet, lambda f: (f.rule,)):
         names = list(dict.fromkeys(f.device or f.net for f in group if f.device or f.net))
         yield f"{style.level('note')} {group[0].rule}"
@@ -42,6 +42,18 @@ def findings_text(findings: Sequence[Finding], style: Style, notes: bool) -> Ite
             yield from wrapped(group[0].message, style.width, "    ")
     if quiet:
         yield style.faint("    --notes shows every note in full")
+    yield from _waived(findings, style)
+
+
+def _waived(findings: Sequence[Finding], style: Style) -> Iterable[str]:
+    """Findings that a reviewed waiver covers: what, why, and how long."""
+    for group in _grouped([f for f in findings if f.waived is not None], _thing):
+        f, waived = group[0], group[0].waived
+        assert waived is not None
+        reference = f" ({waived.reference})" if waived.reference else ""
+        until = f", until {waived.until}" if waived.until else ""
+        yield f"waived  {f.level} {f.rule} {printable(f.device or f.net or '')}".rstrip()
+        yield from wrapped(f"{f.message} Waived{until}: {waived.reason}{reference}", style.width, "    ")
 
 
 def _thing(f: Finding) -> tuple[object, ...]:
@@ -128,8 +140,13 @@ def _headline(board: Board, failed: bool, style: Style, what: str, complete: boo
 
 
 def _counted(findings: Sequence[Finding]) -> str:
-    counts = {level: sum(1 for f in findings if f.level == level) for level in ("error", "warning", "note")}
-    return ", ".join(f"{n} {level}{'s' if n != 1 else ''}" for level, n in counts.items())
+    counts = {
+        level: sum(1 for f in findings if f.level == level and f.waived is None)
+        for level in ("error", "warning", "note")
+    }
+    waived = sum(1 for f in findings if f.waived is not None)
+    said = ", ".join(f"{n} {level}{'s' if n != 1 else ''}" for level, n in counts.items())
+    return f"{said}, {waived} waived" if waived else said
 
 
 def _coverage(audit: Audit, style: Style) -> list[str]:

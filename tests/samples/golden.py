@@ -28,7 +28,8 @@ def reports(path: Path) -> tuple[str, str]:
     audit = board.audit()
     text = audit_text(audit, audit.fails(), Style(), False, "VERSION")
     record = _rounded(audit_record(audit, audit.fails(), "VERSION"))
-    record.pop("files")
+    for told_apart in ("files", "parts"):
+        record.pop(told_apart)
     return text, json.dumps(record, indent=1, ensure_ascii=False) + "\n"
 
 

@@ -1,0 +1,1 @@
+"""Many boards and what a change made of them: running, keeping, waiving, comparing."""
