@@ -167,10 +167,10 @@ def _misfit(extreme: Extreme, device: Device, circuit: Circuit, on: bool, limit:
     if extreme.value <= 0:
         return
     volts = float(_coil(extreme.board, device))
-    said = "on, but too little to hold it" if on else "off, but enough to pull it in"
+    said, state = ("too little to hold it", "on") if on else ("enough to pull it in", "off")
     yield made(
         "point/coil-state", "warning", device, circuit.mode,
-        f"its coil gets {engineering(volts, 'V')}, and its contact is given as {said}: set the state that fits, or "
-        "mend the drive of the coil",
+        f"its coil gets {engineering(volts, 'V')}, {said}, but its contact is given as {state}: set the state that "
+        "fits, or mend the drive of the coil",
         extreme.corner, quantity="voltage", value=volts, limit=limit, unit="V",
     )  # fmt: skip

@@ -91,8 +91,8 @@ def _back_feed_finding(extreme: Extreme, device: Device, circuit: Circuit) -> It
     pin = "+" if _sign(device) > 0 else "-"
     yield made(
         "point/back-feed", "error", device, circuit.mode,
-        f"{engineering(pushed, 'A')} are pushed back into the supply, which can absorb {engineering(allowed, 'A')}"
-        f"{_by(extreme.board, device.pins[pin], device)}: block the path with a diode, or state sinks=",
+        f"{engineering(pushed, 'A')} are pushed back into the supply{_by(extreme.board, device.pins[pin], device)}, and "
+        f"it can absorb {engineering(allowed, 'A')}: block the path with a diode, or state sinks=",
         extreme.corner, net=device.pins["+"], quantity="current", value=pushed, limit=allowed, unit="A",
     )  # fmt: skip
 

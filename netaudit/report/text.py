@@ -189,7 +189,7 @@ def _worst_modes(stresses: Sequence[Stress]) -> list[Stress]:
 
 def _stress_row(s: Stress, audit: Audit, many: bool) -> list[str]:
     assert s.limit is not None
-    ratio = "-" if s.ratio is None else f"{'≥' if s.lower_bound else ''}{s.ratio * 100:.0f} %"
+    ratio = "-" if s.ratio is None else f"{'≥' if s.lower_bound else ''}{s.ratio * 100:z.0f} %"
     proof = s.proof if s.bound is None else f"{s.proof} {engineering(s.bound, s.unit)}"
     at = (f"{s.mode}: " if many else "") + corner(s.corner, audit.units) + (f" ({s.variant})" if s.variant else "")
     numbers = [engineering(x, s.unit) for x in (s.nominal, s.worst, s.limit)]
