@@ -124,7 +124,19 @@ def linear_sums(system: System, num: Numbers, dx: Array, slope: Array) -> Array:
 
 
 def loop_gain(heat: Heat, slopes: Array, share: float = 1.0) -> tuple[Array, Array]:
-    """The matrix share R K and its largest real eigenvalue, for slopes (..., h, h)."""
-    gain = share * heat.resistance @ slopes
+    """The matrix share R K and its largest real eigenvalue, for slopes (..., h, h).
+
+    Where the electrical part is singular its slopes are no numbers: they count as no answer (0) then.
+    """
+    gain = share * heat.resistance @ np.where(np.isfinite(slopes), slopes, 0.0)
     values = np.linalg.eigvals(gain)
     return gain, np.asarray(np.where(np.abs(values.imag) < 1e-9, values.real, -np.inf).max(axis=-1))
+
+
+def closed_loop(gain: Array, rise: Array) -> Array:
+    """(1 - gain)^-1 rise, for gain (..., h, h) and rise (..., h, k); the open loop's rise where the loop is singular."""
+    with np.errstate(all="ignore"):
+        try:
+            return np.asarray(np.linalg.solve(np.eye(gain.shape[-1]) - gain, rise))
+        except np.linalg.LinAlgError:
+            return rise

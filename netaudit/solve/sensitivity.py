@@ -14,7 +14,7 @@ import numpy as np
 
 from netaudit.devices.base import Array, Value
 from netaudit.quantities.quantity import Quantity
-from netaudit.solve.heat import loop_gain, power_change, respond, warming
+from netaudit.solve.heat import closed_loop, loop_gain, power_change, respond, warming
 from netaudit.solve.linear import Dense
 from netaudit.solve.settle import Solver
 from netaudit.solve.solved import Solved
@@ -106,8 +106,7 @@ def _with_heat(solver: Solver, solved: Solved, d: Array, dx: Array) -> tuple[Arr
     dp = power_change(solver.system, heat, solved, d, dx)
     rise = dp @ heat.resistance.T
     gain, _ = loop_gain(heat, warm.slopes)
-    inverse = np.linalg.inv(np.eye(len(heat.devices)) - gain)
-    dt = rise @ np.swapaxes(inverse, -1, -2)
+    dt = np.swapaxes(closed_loop(gain, np.swapaxes(rise, -1, -2)), -1, -2)
     return dx + dt @ warm.dx, dt
 
 

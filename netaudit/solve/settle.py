@@ -7,7 +7,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from netaudit.devices.base import Array, Value
-from netaudit.solve.heat import Heat, heat_paths, loop_gain, warming
+from netaudit.solve.heat import Heat, closed_loop, heat_paths, loop_gain, warming
 from netaudit.solve.ladder import climb
 from netaudit.solve.linear import Linear, choose
 from netaudit.solve.newton import newton, seen_resistance
@@ -115,6 +115,9 @@ class Solver:
             named[k] = found.method
             if found.x is not None:
                 x[k], u[k], good[k] = found.x, found.u, True
+        # a member that was not found is marked as such; what it carries on must still be numbers
+        lost = ~good & ~(np.isfinite(x).all(axis=-1) & np.isfinite(u).all(axis=-1))
+        x[lost], u[lost] = 0.0, self.system.start
         return x, u, good, steps, named
 
     def _thermal_step(self, solved: Solved, job: Job) -> tuple[Array, Array, Array]:
@@ -125,13 +128,7 @@ class Solver:
         air = np.asarray(job.ambient, dtype=float).reshape(-1, 1)
         rest = air + power @ resistance.T - solved.temperature[:, heat.devices]
         slopes = warming(self.system, heat, solved, self.linear).slopes
-        slopes = np.where(np.isfinite(slopes), slopes, 0.0)
         gain, largest = loop_gain(heat, slopes, job.share)
-        lhs = np.eye(len(heat.devices)) - gain
-        with np.errstate(all="ignore"):
-            try:
-                step = np.linalg.solve(lhs, rest[..., None])[..., 0]
-            except np.linalg.LinAlgError:
-                step = rest
+        step = closed_loop(gain, rest[..., None])[..., 0]
         # a junction does not warm by hundreds of kelvin in one honest step: keep the laws where they are smooth
         return np.clip(step, -60.0, 60.0), largest, gain
