@@ -31,6 +31,9 @@ _ROUNDS = 8
 #: values along which one quantity is searched inside its range in each round
 _INSIDE = 4
 _ZOOM = 4
+#: rows for which every remedy is tried in vain before the rest gets plain Newton only: where so many corners have no
+#: operating point the finding stands, and each further one costs as much as the whole board
+_VAIN = 8
 
 
 @dataclass(frozen=True)
@@ -63,6 +66,7 @@ class Explorer:
         self._slopes: dict[int, Array] = {}
         #: corners at which no operating point was found
         self.failures: list[dict[str, float]] = []
+        self._lost: set[bytes] = set()
 
     def extremes(self, objectives: Sequence[Objective]) -> list[Extreme]:
         """The largest value of each objective over the box."""
@@ -172,7 +176,7 @@ class Explorer:
     ) -> None:
         """Solves the rows with these values, each objective in its column, and takes over what is better."""
         wanted = {k: [self._with(int(best[k]), column[k], g) for g in grid] for k, grid in grids.items()}
-        self._solve([row for rows in wanted.values() for row in rows])
+        self._solve([row for rows in wanted.values() for row in rows], remedies=False)
         table = self._table(objectives)
         for k, rows in wanted.items():
             for row in (self.known[r.tobytes()] for r in rows if r.tobytes() in self.known):
@@ -211,31 +215,38 @@ class Explorer:
         picked = [self._columns[b][m] for b, m in self.member]
         return np.array(picked)
 
-    def _solve(self, wanted: Sequence[Array]) -> None:
-        """Solves the rows not solved yet, as batches started from the nominal point."""
-        fresh = {row.tobytes(): row for row in wanted if row.tobytes() not in self.known}
-        rows = list(fresh.values())
+    def _solve(self, wanted: Sequence[Array], remedies: bool = True) -> None:
+        """Solves the rows not looked at yet, as batches started from the nominal point; what Newton misses is solved by
+        the remedies, one after the other.  Rows within a range (``remedies`` False) lie between solved ones and do
+        without."""
+        keys = {row.tobytes(): row for row in wanted}
+        rows = [row for key, row in keys.items() if key not in self.known and key not in self._lost]
         size = chunks(self.solver, len(rows)) if rows else 1
+        missed: list[Array] = []
         for start in range(0, len(rows), size):
-            self._solve_batch(np.array(rows[start : start + size]))
+            missed += self._solve_batch(np.array(rows[start : start + size]), remedies=False)
+        self._lost |= {row.tobytes() for row in missed}
+        for row in missed if remedies else ():
+            if len(self.failures) < _VAIN and self._solve_batch(row[None], remedies=True):
+                self.failures.append({v.key: float(row[c]) for c, v in enumerate(self.spans)})
 
-    def _solve_batch(self, values: Array) -> None:
+    def _solve_batch(self, values: Array, remedies: bool) -> list[Array]:
+        """Solves rows as one batch; gives those without an operating point."""
         nominal = self.boards[0]
         overrides, air = assign(self.spans, values, self.solver.system.circuit.ambient.nominal)
         count = len(values)
         rise = nominal.temperature - np.asarray(nominal.ambient, dtype=float).reshape(-1, 1)
         ambient = np.broadcast_to(np.asarray(air, dtype=float), (count,))
         job = Job(overrides, ambient, count, np.repeat(nominal.u, count, axis=0), rise + ambient[:, None])
-        settled = self.solver.settle(job)
+        settled = self.solver.settle(job, remedies)
         batch = len(self.boards)
         self.boards.append(settled.solved)
-        for member, row in enumerate(values):
-            if settled.converged[member]:
-                self.known[row.tobytes()] = len(self.rows)
-                self.rows.append(row)
-                self.member.append((batch, member))
-            else:
-                self.failures.append({v.key: float(row[c]) for c, v in enumerate(self.spans)})
+        for member in np.flatnonzero(settled.converged):
+            row = values[member]
+            self.known[row.tobytes()] = len(self.rows)
+            self.rows.append(row)
+            self.member.append((batch, int(member)))
+        return [values[member] for member in np.flatnonzero(~settled.converged)]
 
     def _gradients(self, objectives: Sequence[Objective], rows: Sequence[int]) -> dict[int, Array]:
         """Signed influences at some rows, {row: (objectives, variables)}: the change of each objective for a small
