@@ -47,8 +47,9 @@ class Batch:
 
     @property
     def failed(self) -> bool:
-        """Whether a board fails or could not be read."""
-        return any(board.failed for board in self.boards)
+        """Whether a board fails or could not be read, or the project as a whole fails."""
+        level = rank(self.boards[0].fail_on) if self.boards else 0
+        return any(board.failed for board in self.boards) or any(rank(f.level) >= level for f in self.findings)
 
     @property
     def policies(self) -> tuple[str, ...]:

@@ -9,12 +9,11 @@ from typing import TYPE_CHECKING, Any
 from netaudit import __version__
 from netaudit.cli.common import FLAG, add_fail_on, add_files, add_modes, complain, deliver, shown
 from netaudit.cli.reports import add_reports, wanted, write_reports
-from netaudit.cli.settings import Target, fail_on, nominal, plan_of, policy_name, require_complete, targets
+from netaudit.cli.settings import add_cache, cache_of, jobs_of, targets
 from netaudit.report.style import Style
 
 if TYPE_CHECKING:
     from netaudit.audit.batch import Batch, BoardResult
-    from netaudit.gate.job import Job
 
 
 def add(commands: Any) -> None:
@@ -28,6 +27,7 @@ def add(commands: Any) -> None:
     add_modes(command)
     add_fail_on(command)
     add_reports(command)
+    add_cache(command)
     command.add_argument(
         "--nominal", action=FLAG, help="nominal values only: no ranges, no tolerances (default: worst case)"
     )
@@ -59,42 +59,26 @@ def add(commands: Any) -> None:
 def run(options: argparse.Namespace) -> int:
     from netaudit.audit.batch import Batch
     from netaudit.gate.run import run_jobs
-    from netaudit.parts.policy import load_policy
+    from netaudit.gate.waive import homeless
 
     reports = wanted(options.reports)
-    jobs = tuple(_job(target, options) for target in targets(options))
-    for name in {job.policy for job in jobs}:
-        # a policy that is not there is said once, before anything is solved
-        load_policy(name)
+    files = targets(options)
+    jobs = jobs_of(options, files)
+    live = any(report.format.live for report in reports)
     results: list[BoardResult] = []
-    for result in shown(run_jobs(jobs), len(jobs)):
+    for result in shown(run_jobs(jobs, cache_of(options, files), live), len(jobs)):
         results.append(result)
         if result.audit is None:
             complain(result.error, result.place)
-    batch = Batch(tuple(results), __version__)
+    # the whole project was looked at only when no files were named
+    lost = () if options.files else homeless(jobs[0].verdict.waivers, (job.verdict.board for job in jobs))
+    batch = Batch(tuple(results), __version__, lost)
     text = write_reports(reports, batch) if reports else ""
     if len(jobs) > 1 or results[0].audit is not None:
         text = text or _text(options, batch)
     if text:
         deliver(text, options.output)
-    return max((2 if r.audit is None else int(r.failed) for r in results), default=0)
-
-
-def _job(target: Target, options: argparse.Namespace) -> Job:
-    from netaudit.gate.job import Job
-
-    project = target.project
-    return Job(
-        target.path,
-        target.root,
-        tuple(options.changes),
-        policy_name(options, project),
-        nominal(options, project),
-        tuple(options.modes),
-        plan_of(options, project),
-        fail_on(options, project),
-        require_complete(options, project),
-    )
+    return max(int(batch.failed), *(2 if r.audit is None else 0 for r in results))
 
 
 def _text(options: argparse.Namespace, batch: Batch) -> str:
@@ -103,12 +87,15 @@ def _text(options: argparse.Namespace, batch: Batch) -> str:
         from netaudit.report.json_report import render
 
         return render(batch)
-    from netaudit.report.text import audit_text
+    from netaudit.report.text import audit_text, findings_text
 
     style = Style.for_stream(sys.stdout.isatty() and options.output is None)
-    return "\n".join(
+    texts = [
         f"{board.error}\n"
         if board.audit is None
         else audit_text(board.audit, board.failed, style, options.notes, __version__)
         for board in batch.boards
-    )
+    ]
+    if batch.findings:
+        texts.append("\n".join(findings_text(batch.findings, style, options.notes)) + "\n")
+    return "\n".join(texts)

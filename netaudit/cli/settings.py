@@ -4,12 +4,13 @@ from __future__ import annotations
 
 import argparse
 import os
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
 
 from netaudit.failure import InputError
 from netaudit.finding import Level
+from netaudit.parts.policy import policy_files
 from netaudit.project.globs import named_files
 from netaudit.project.project import FILE_NAME, Project
 from netaudit.project.read import find_project, project_at
@@ -17,6 +18,8 @@ from netaudit.syntax.paths import project_root
 
 if TYPE_CHECKING:
     from netaudit.audit.statistics import Plan
+    from netaudit.gate.cache import Cache
+    from netaudit.gate.job import Job
 
 
 @dataclass(frozen=True)
@@ -54,6 +57,76 @@ def project_of(root: str | None, instead: str) -> Project:
         where = "in this folder or above it" if root is None else f"in {root}"
         raise InputError(f"no {FILE_NAME} stands {where}", mend=f"{instead}, or write one with: netaudit init")
     return project
+
+
+def jobs_of(options: argparse.Namespace, files: Sequence[Target]) -> tuple[Job, ...]:
+    """What to audit, and how: what each project says once is read once.  Raises InputError for what it says wrong."""
+    from netaudit.gate.job import Job, Verdict
+    from netaudit.gate.waivers import read_waivers
+    from netaudit.parts.policy import load_policy
+
+    projects = {target.project.file if target.project else "": target.project for target in files}
+    waivers = {name: read_waivers(project) for name, project in projects.items()}
+    tables = {name: tables_of(project) for name, project in projects.items()}
+    for policy in {policy_name(options, project) for project in projects.values()}:
+        # one that is not there is said once, before anything is solved
+        load_policy(policy)
+    jobs = []
+    for target in files:
+        project, name = target.project, target.project.file if target.project else ""
+        policy = policy_name(options, project)
+        board = board_name(project, target.path)
+        verdict = Verdict(fail_on(options, project), require_complete(options, project), waivers[name], board)
+        jobs.append(
+            Job(
+                target.path, target.root, tuple(options.changes), policy, nominal(options, project),
+                tuple(options.modes), plan_of(options, project), tables[name], policy_files(policy), verdict,
+            )
+        )  # fmt: skip
+    return tuple(jobs)
+
+
+def tables_of(project: Project | None) -> tuple[str, ...]:
+    """The paths of a project's part tables."""
+    if project is None:
+        return ()
+    return tuple(project.path(name) for name in named_files(project, "parts", project.parts))
+
+
+def board_name(project: Project | None, path: str) -> str:
+    """A netlist's path from its project's folder, as waivers name it."""
+    if project is None:
+        return path
+    return os.path.relpath(os.path.realpath(path), os.path.realpath(project.folder)).replace(os.sep, "/")
+
+
+def cache_of(options: argparse.Namespace, files: Sequence[Target]) -> Cache | None:
+    """The cache that the command line or the project names."""
+    from netaudit.gate.cache import Cache
+
+    if options.no_cache:
+        return None
+    if options.cache is not None:
+        return Cache(options.cache)
+    project = files[0].project if files else None
+    return Cache(project.path(project.cache)) if project is not None and project.cache is not None else None
+
+
+def workers_of(options: argparse.Namespace, files: Sequence[Target]) -> int:
+    """How many boards at a time; 0 stands for every processor."""
+    project = files[0].project if files else None
+    count: int = stated(options.workers, project, lambda p: p.workers, 1)
+    if not 0 <= count <= 256:
+        raise InputError(f"--workers {count}", mend="between 0 and 256")
+    return count or len(os.sched_getaffinity(0))
+
+
+def add_cache(command: argparse.ArgumentParser) -> None:
+    command.add_argument(
+        "--cache", metavar="FOLDER", help="keep the audits of boards there; only changed ones are solved"
+    )
+    command.add_argument("--workers", type=int, metavar="N", help="boards at a time; 0: every processor (default: 1)")
+    command.add_argument("--no-cache", action="store_true", help="solve every board anew, keep nothing")
 
 
 def stated(given: Any, project: Project | None, of: Callable[[Project], Any], otherwise: Any) -> Any:

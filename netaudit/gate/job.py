@@ -1,8 +1,9 @@
-"""One board to audit, with everything that its audit depends on besides the files."""
+"""One board to audit, with everything that its audit depends on besides the files that it reads."""
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+import datetime
+from dataclasses import dataclass, field
 
 from netaudit.audit.batch import BoardResult
 from netaudit.audit.records import Audit
@@ -10,13 +11,29 @@ from netaudit.audit.statistics import Plan
 from netaudit.circuit.load import load_board
 from netaudit.failure import InputError
 from netaudit.finding import Level
+from netaudit.gate.waive import waived_audit
+from netaudit.gate.waivers import Waivers
+
+
+@dataclass(frozen=True)
+class Verdict:
+    """What decides a verdict, not the audit: the level at which a board fails, and the project's waivers.
+
+    ``board`` is the netlist's name in waivers: its path from the project's folder.
+    """
+
+    fail_on: Level = "error"
+    require_complete: bool = False
+    waivers: Waivers = field(default_factory=Waivers)
+    board: str = ""
+    today: datetime.date = field(default_factory=datetime.date.today)
 
 
 @dataclass(frozen=True)
 class Job:
     """A netlist and how to audit it; ``policy`` is a name or a file, ``modes`` empty for all.
 
-    ``fail_on`` and ``require_complete`` decide the verdict, not the audit.
+    ``tables`` are the project's part tables, ``other_files`` what is read besides (a policy's file).
     """
 
     path: str
@@ -26,8 +43,9 @@ class Job:
     nominal: bool = False
     modes: tuple[str, ...] = ()
     plan: Plan | None = None
-    fail_on: Level = "error"
-    require_complete: bool = False
+    tables: tuple[str, ...] = ()
+    other_files: tuple[str, ...] = ()
+    verdict: Verdict = field(default_factory=Verdict)
 
 
 def solve(job: Job) -> Audit:
@@ -39,10 +57,14 @@ def solve(job: Job) -> Audit:
 
 
 def judged(job: Job, found: Audit) -> BoardResult:
-    """The result with its verdict."""
-    return BoardResult(job.path, found, found.fails(job.fail_on, job.require_complete), fail_on=job.fail_on)
+    """The result with its waivers applied and its verdict."""
+    verdict = job.verdict
+    whole = not job.modes and not job.changes and not job.nominal
+    audit = waived_audit(found, verdict.waivers, verdict.board, verdict.today, whole)
+    failed = audit.fails(verdict.fail_on, verdict.require_complete)
+    return BoardResult(job.path, audit, failed, fail_on=verdict.fail_on)
 
 
 def refused(job: Job, error: InputError) -> BoardResult:
     """What stands for a board that could not be read."""
-    return BoardResult(job.path, None, True, str(error), error.place, job.fail_on)
+    return BoardResult(job.path, None, True, str(error), error.place, job.verdict.fail_on)

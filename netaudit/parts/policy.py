@@ -165,6 +165,18 @@ def load_policy(name: str) -> Policy:
     raise InputError(f"there is no policy {name}", mend=f"one of {', '.join(policy_names())}, or a .toml file")
 
 
+def policy_files(name: str) -> tuple[str, ...]:
+    """The files that a policy is read from: its own, and those that it is based on."""
+    found: list[str] = []
+    while name.endswith(".toml") and name not in found:
+        found.append(name)
+        try:
+            name = str(tomllib.loads(Path(name).read_text(encoding="utf-8-sig")).get("base", ""))
+        except (OSError, ValueError):
+            break
+    return tuple(found)
+
+
 def _from_file(path: str) -> Policy:
     try:
         text = Path(path).read_text(encoding="utf-8-sig")

@@ -5,7 +5,7 @@ from __future__ import annotations
 from typing import Any
 
 from netaudit.audit.batch import Batch, BoardResult
-from netaudit.report.json_text import audit_record, dumps
+from netaudit.report.json_text import audit_record, dumps, finding_record
 
 
 def render(batch: Batch) -> str:
@@ -15,7 +15,10 @@ def render(batch: Batch) -> str:
 
 def whole(batch: Batch) -> dict[str, Any]:
     records = [_record(board, batch.version) for board in batch.boards]
-    return records[0] if len(records) == 1 else {"schema": "netaudit/audit-set/1", "boards": records}
+    if len(records) == 1 and not batch.findings:
+        return records[0]
+    findings = [finding_record(f) for f in batch.findings]
+    return {"schema": "netaudit/audit-set/1", "boards": records, **({"findings": findings} if findings else {})}
 
 
 def _record(board: BoardResult, version: str) -> dict[str, Any]:

@@ -12,7 +12,8 @@ from dataclasses import dataclass, field
 from xml.sax.saxutils import escape, quoteattr
 
 from netaudit.audit.batch import Batch, BoardResult
-from netaudit.circuit.circuit import Expectation
+from netaudit.audit.records import Audit, Coverage
+from netaudit.circuit.circuit import Board, Expectation
 from netaudit.failure import printable
 from netaudit.finding import Finding
 from netaudit.quantities.write import engineering
@@ -34,12 +35,19 @@ class _Case:
 
 def render(batch: Batch) -> str:
     """The document."""
-    suites = [_suite(board, number, batch) for number, board in enumerate(batch.boards)]
+    boards = [*batch.boards, *([_project(batch)] if batch.findings else [])]
+    suites = [_suite(board, number, batch) for number, board in enumerate(boards)]
     counts = {name: sum(s[0][name] for s in suites) for name in ("tests", "failures", "errors")}
     lines = ['<?xml version="1.0" encoding="UTF-8"?>', f"<testsuites{_attributes({'name': 'netaudit', **counts})}>"]
     for _, text in suites:
         lines += text
     return "\n".join([*lines, "</testsuites>"]) + "\n"
+
+
+def _project(batch: Batch) -> BoardResult:
+    """Findings that belong to no board stand in a suite of their own."""
+    empty = Audit(Board("project", "", (), (), True), "", (), batch.findings, (), Coverage(0, 0, 0, (), 0, 0, 0), True)
+    return BoardResult("project", empty, batch.failed, fail_on=batch.boards[0].fail_on if batch.boards else "error")
 
 
 def _suite(board: BoardResult, number: int, batch: Batch) -> tuple[Mapping[str, int], list[str]]:

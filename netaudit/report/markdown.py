@@ -8,7 +8,7 @@ from __future__ import annotations
 import re
 from collections.abc import Iterable, Sequence
 
-from netaudit.audit.batch import Batch, BoardResult
+from netaudit.audit.batch import Batch
 from netaudit.failure import printable
 from netaudit.finding import Finding, rank
 from netaudit.report.provenance import CAUTION, policies
@@ -22,12 +22,13 @@ _SPECIAL = re.compile(r"([\\`*_\[\]|~])")
 #: what a host turns into a mention, a reference to an issue, a link
 _CALLS = ((re.compile(r"([@#])(?=\w)"), "\\1\u200d"), (re.compile(r"(://|\bwww\.)"), "\\1\u200d"))
 
-Row = tuple[BoardResult, Finding]
+Row = tuple[str, Finding]
 
 
 def render(batch: Batch) -> str:
     """The comment, below the length that hosts take."""
-    rows = [(board, f) for board, audit in batch.audited for f in audit.findings]
+    rows = [(board.name, f) for board, audit in batch.audited for f in audit.findings]
+    rows += [(f.file or "", f) for f in batch.findings]
     rows.sort(key=lambda row: (row[1].waived is not None, -rank(row[1].level), -(row[1].ratio or 0.0)))
     loud = [row for row in rows if row[1].level != "note" and row[1].waived is None]
     text = "\n".join([*_headline(batch, rows), "", *table(loud[:_ROWS], len(batch.boards) > 1), *_broken(batch)])
@@ -67,7 +68,7 @@ def table(rows: Sequence[Row], several: bool) -> list[str]:
     lines = ["| level | part | rule | what |", "| --- | --- | --- | --- |"]
     for board, f in rows:
         name = f.device or f.net or ""
-        where = f"{plain(board.name)}: {plain(name)}" if several else plain(name)
+        where = f"{plain(board)}: {plain(name)}" if several else plain(name)
         lines.append(f"| {f.level} | {where} | {plain(f.rule)} | {sentence(f)} |")
     return lines
 

@@ -33,6 +33,7 @@ def render(batch: Batch) -> str:
 def log(batch: Batch) -> dict[str, Any]:
     """The log as plain values."""
     found = [(f, r) for board, audit in batch.audited for f, r in _results(board, audit)]
+    found += _project(batch)
     # the order of the sort key keeps the order of boards among equals
     found.sort(key=lambda pair: (pair[0].waived is not None, -rank(pair[0].level)))
     kept = found[:MOST_RESULTS]
@@ -89,12 +90,18 @@ def _notification(board: BoardResult) -> dict[str, Any]:
 
 def _results(board: BoardResult, audit: Audit) -> Iterable[tuple[Finding, Result]]:
     for finding, mark in zip(audit.findings, fingerprints(audit.findings, audit.parts), strict=True):
-        yield finding, _result(board, finding, mark)
+        yield finding, _result(board.name, finding, mark)
 
 
-def _result(board: BoardResult, finding: Finding, mark: str) -> Result:
-    location: dict[str, Any] = {"physicalLocation": _physical(finding.file or board.name, finding.line or 1)}
-    logical = _logical(board.name, finding)
+def _project(batch: Batch) -> Iterable[tuple[Finding, Result]]:
+    """Findings that belong to no board."""
+    for finding, mark in zip(batch.findings, fingerprints(batch.findings, ()), strict=True):
+        yield finding, _result("", finding, mark)
+
+
+def _result(board: str, finding: Finding, mark: str) -> Result:
+    location: dict[str, Any] = {"physicalLocation": _physical(finding.file or board, finding.line or 1)}
+    logical = _logical(board, finding)
     if logical:
         location["logicalLocations"] = logical
     return {
@@ -135,9 +142,9 @@ def _suppressions(finding: Finding) -> list[dict[str, Any]]:
     return [{"kind": "external", "status": "accepted", "justification": "; ".join(s for s in said if s)}]
 
 
-def _properties(board: BoardResult, finding: Finding) -> Mapping[str, Any]:
+def _properties(board: str, finding: Finding) -> Mapping[str, Any]:
     every = {
-        "board": board.name,
+        "board": board or None,
         "mode": finding.mode,
         "variant": finding.variant,
         "quantity": finding.quantity,

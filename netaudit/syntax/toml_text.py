@@ -57,6 +57,18 @@ class TomlText:
                 return self._at(offset)
         return Place(self.file, 1)
 
+    def rows(self, name: str) -> tuple[dict[str, Place], ...]:
+        """For each ``[[name]]`` heading the places of its keys; that of the heading itself under the empty name."""
+        found: list[dict[str, Place]] = []
+        for path, offset in _mentions(self.text):
+            if path[:1] != (name,):
+                continue
+            if self.text.startswith("[[", offset) and len(path) == 1:
+                found.append({"": self._at(offset)})
+            elif found and len(path) > 1:
+                found[-1].setdefault(path[1], self._at(offset))
+        return tuple(found)
+
     def _at(self, offset: int) -> Place:
         start = self.text.rfind("\n", 0, offset) + 1
         line = self.text[start:].partition("\n")[0].rstrip("\r")

@@ -5,6 +5,8 @@ from types import ModuleType
 from netaudit.audit.rule import Rule
 from netaudit.audit.rules import (
     expect_missed,
+    gate_stale_waiver,
+    gate_worse,
     graph_bridged_part,
     graph_floating_control,
     graph_joined_grounds,
@@ -57,6 +59,8 @@ from netaudit.audit.rules import (
 
 _MODULES: tuple[ModuleType, ...] = (
     expect_missed,
+    gate_stale_waiver,
+    gate_worse,
     graph_bridged_part,
     graph_floating_control,
     graph_joined_grounds,
