@@ -269,7 +269,9 @@ class Explorer:
         for r in part:
             self._slopes[r] = np.zeros((len(objectives), len(columns)))
         for k, f in enumerate(objectives):
-            there = np.broadcast_to(f(near), (shape[0] * shape[1],)).reshape(shape)
+            # at a singular point nothing is known of the neighbours: no number, no influence
+            with np.errstate(invalid="ignore"):
+                there = np.broadcast_to(f(near), (shape[0] * shape[1],)).reshape(shape)
             here = np.array([table[r, k] for r in part])[:, None]
             change = np.where(np.isfinite(there), there - here, 0.0)
             change[np.abs(change) <= _NEGLIGIBLE * np.abs(here)] = 0.0
