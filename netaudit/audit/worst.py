@@ -216,28 +216,32 @@ class Explorer:
         return np.array(picked)
 
     def _solve(self, wanted: Sequence[Array], remedies: bool = True) -> None:
-        """Solves the rows not looked at yet, as batches started from the nominal point; what Newton misses is solved by
-        the remedies, one after the other.  Rows within a range (``remedies`` False) lie between solved ones and do
-        without."""
+        """Solves the rows not looked at yet, as batches started from the nominal point.
+
+        What Newton misses is solved by the remedies, and each row that they solve is a start for those still missed.
+        Rows within a range (``remedies`` False) lie between solved ones and do without.
+        """
         keys = {row.tobytes(): row for row in wanted}
         rows = [row for key, row in keys.items() if key not in self.known and key not in self._lost]
         size = chunks(self.solver, len(rows)) if rows else 1
         missed: list[Array] = []
         for start in range(0, len(rows), size):
-            missed += self._solve_batch(np.array(rows[start : start + size]), remedies=False)
+            missed += self._solve_batch(np.array(rows[start : start + size]), self.boards[0])
         self._lost |= {row.tobytes() for row in missed}
-        for row in missed if remedies else ():
-            if len(self.failures) < _VAIN and self._solve_batch(row[None], remedies=True):
+        while missed and remedies and len(self.failures) < _VAIN:
+            row = missed.pop(0)
+            if self._solve_batch(row[None], self.boards[0], remedies=True):
                 self.failures.append({v.key: float(row[c]) for c, v in enumerate(self.spans)})
+            elif missed:
+                missed = self._solve_batch(np.array(missed), self.boards[-1])
 
-    def _solve_batch(self, values: Array, remedies: bool) -> list[Array]:
-        """Solves rows as one batch; gives those without an operating point."""
-        nominal = self.boards[0]
+    def _solve_batch(self, values: Array, near: Solved, remedies: bool = False) -> list[Array]:
+        """Solves rows as one batch, each started from a solved board; gives those without an operating point."""
         overrides, air = assign(self.spans, values, self.solver.system.circuit.ambient.nominal)
         count = len(values)
-        rise = nominal.temperature - np.asarray(nominal.ambient, dtype=float).reshape(-1, 1)
+        rise = near.temperature - np.asarray(near.ambient, dtype=float).reshape(-1, 1)
         ambient = np.broadcast_to(np.asarray(air, dtype=float), (count,))
-        job = Job(overrides, ambient, count, np.repeat(nominal.u, count, axis=0), rise + ambient[:, None])
+        job = Job(overrides, ambient, count, np.repeat(near.u, count, axis=0), rise + ambient[:, None])
         settled = self.solver.settle(job, remedies)
         batch = len(self.boards)
         self.boards.append(settled.solved)
