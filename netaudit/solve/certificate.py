@@ -13,6 +13,10 @@ import numpy as np
 from netaudit.solve.solved import Solved
 
 
+#: the smallest current that a result states (A): pin currents hold within 1e-9 relative or this
+_CLAIMED = 1e-15
+
+
 @dataclass(frozen=True)
 class Certificate:
     """``residual_current`` in amperes (the largest over the nets; the grounds count as one), ``worst_net``,
@@ -47,11 +51,15 @@ def certify(solved: Solved) -> Certificate:
 
 
 def _rounding(solved: Solved) -> np.ndarray:
-    """The rounding floor of every net's sum: the magnitudes of all terms of its pins times a few ulp, in amperes."""
+    """The rounding floor of every net's sum: the magnitudes of all terms of its pins times a few ulp, in amperes.
+
+    Below a femtoampere no current is claimed: nets that only blocking junctions reach carry less than that, and their
+    currents are differences within a matrix of much larger terms.
+    """
     system = solved.system
     terms = np.abs(system.contributions(solved.num, solved.x, solved.phi))
     per_pin = system.balance.spread(terms)[: len(system.pins)]
-    floor = system.to_nets.spread(per_pin) * 256 * np.finfo(float).eps + 1e-18
+    floor = system.to_nets.spread(per_pin) * 256 * np.finfo(float).eps + _CLAIMED
     grounds = [k for k, net in enumerate(system.nets) if net in system.circuit.grounds]
     floor[grounds] = floor[grounds].sum()
     return np.asarray(floor)

@@ -52,13 +52,6 @@ class Operation:
         proven, because = known.unique, known.because
         if not settled.converged[0]:
             return self._nothing(settled, because)
-        certificate = certify(settled.solved.pick(0))
-        if not certificate.holds:
-            failure = (
-                f"the iteration ended in a point whose pin currents do not sum to zero: "
-                f"{certificate.residual_current:.3g} A are left over on net {certificate.worst_net}"
-            )
-            return ModeResult(self.circuit, (), "searched", because, failure, certificate.worst_net)
         wild = self._wild(settled.solved.pick(0))
         if wild is not None:
             failure = (
@@ -66,6 +59,13 @@ class Operation:
                 "way back but leakage"
             )
             return ModeResult(self.circuit, (), "searched", because, failure, wild)
+        certificate = certify(settled.solved.pick(0))
+        if not certificate.holds:
+            failure = (
+                f"the iteration ended in a point whose pin currents do not sum to zero: "
+                f"{certificate.residual_current:.3g} A are left over on net {certificate.worst_net}"
+            )
+            return ModeResult(self.circuit, (), "searched", because, failure, certificate.worst_net)
         every = [settled]
         if known.monotone and not proven and isolated(settled.solved):
             proven, because = True, ALONE

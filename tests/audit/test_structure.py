@@ -51,6 +51,12 @@ FAILS = [
         "D1",
         "error",
     ),
+    (
+        PS + "D1 bridge I_S=1nA AC1:A AC2:B +:GND -:VIN\nR1 resistor 1k 1:A 2:B\n",
+        "graph/unlimited-junction",
+        "D1",
+        "error",
+    ),
     (PS + LOAD + "U1 unmodelled 1:NC 2:VIN\nU2 unmodelled 1:NC 2:VIN\n", "graph/nc-net", "U1", "warning"),
     (PS + LOAD + 'U1 unmodelled 1:"nc" 2:VIN\nU2 unmodelled 1:"nc" 2:VIN\n', "graph/nc-net", "U1", "warning"),
     (PS + LOAD + "D1 diode part=NOTHING A:VIN K:A\nR1 resistor 1k 1:A 2:GND\n", "part/unknown", "D1", "error"),

@@ -87,9 +87,9 @@ def find(site: Site) -> Iterable[Finding]:
 
 
 def _finding(start: str, goal: str, excess: float, string: list[_Step]) -> Finding:
-    names = listed(s.device.name for s in string)
+    devices = list(dict.fromkeys(s.device.name for s in string))
     text = (
-        f"{names} {'conducts' if len(string) == 1 else 'conduct'} across {excess:.3g} V of stiff supplies "
+        f"{listed(devices)} {'conducts' if len(devices) == 1 else 'conduct'} across {excess:.3g} V of stiff supplies "
         f"({start} to {goal}) and nothing limits the current: add a series resistance"
     )
     return Finding(RULE.name, RULE.level, text, net=start, value=excess, unit="V", **about(string[0].device))
@@ -190,7 +190,7 @@ def _strings(
             yield string
         elif net not in seen and len(string) < _LONGEST:
             seen.add(net)
-            waiting += [[*string, step] for step in steps.get(net, ()) if step.device is not string[-1].device]
+            waiting += [[*string, step] for step in steps.get(net, ())]
 
 
 RULE = Rule("graph/unlimited-junction", "error", "structure", "a junction across stiff supplies without a limit", find)
