@@ -9,6 +9,7 @@ from typing import TYPE_CHECKING
 from netaudit.circuit.circuit import Board
 from netaudit.failure import InputError
 from netaudit.finding import Finding
+from netaudit.workers import IN_PROCESS, Workers
 
 if TYPE_CHECKING:
     from netaudit.audit.records import Audit
@@ -60,13 +61,14 @@ class LoadedBoard:
         nominal: bool = False,
         modes: Sequence[str] = (),
         plan: Plan | None = None,
+        workers: Workers = IN_PROCESS,
     ) -> Audit:
         """Every check at its worst corner (at nominal values only with ``nominal``) in every mode or those named;
-        with a ``plan`` of samples also statistics over drawn boards."""
+        with a ``plan`` of samples also statistics over drawn boards; ``workers`` from ``netaudit.workers``."""
         self._known(modes)
         from netaudit.audit.audit import audit
 
-        return audit(self.board, policy, nominal, modes, plan)
+        return audit(self.board, policy, nominal, modes, plan, workers)
 
     def _known(self, modes: Sequence[str]) -> None:
         for mode in modes:

@@ -2,8 +2,10 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping, Sequence
+from collections.abc import Iterable, Iterator, Mapping, Sequence
+from contextlib import suppress
 from dataclasses import dataclass, field, replace
+from typing import TypeVar
 
 from netaudit.audit.conduction import never_conducts
 from netaudit.audit.context import CONDUCTS, Context, context
@@ -26,6 +28,9 @@ from netaudit.parts.policy import Policy, load_policy
 from netaudit.solve.operate import Operation
 from netaudit.solve.point import ModeResult
 from netaudit.solve.solved import Solved
+from netaudit.workers import IN_PROCESS, Interrupted, Workers
+
+Kept = TypeVar("Kept")
 
 
 @dataclass(frozen=True)
@@ -40,14 +45,25 @@ class Options:
 
 @dataclass
 class ModeAudit:
-    """What one mode gave; ``units`` of the keys that stand in its corners."""
+    """What one mode gave; ``units`` of the keys that stand in its corners; ``cut``: it was interrupted."""
 
     result: ModeResult
     stresses: list[Stress]
     findings: list[Finding]
-    watched: list[Watched]
     units: dict[str, str]
     samples: list[SampledStress] = field(default_factory=list)
+    cut: bool = False
+
+
+@dataclass(frozen=True)
+class _Mode:
+    """A solved mode to be audited."""
+
+    board: Board
+    operation: Operation
+    result: ModeResult
+    options: Options
+    known: Context
 
 
 def audit(
@@ -56,32 +72,49 @@ def audit(
     nominal: bool = False,
     modes: Sequence[str] = (),
     plan: Plan | None = None,
+    workers: Workers = IN_PROCESS,
 ) -> Audit:
     """The audit of a board.
 
     ``policy`` by name, file or as loaded; ``nominal`` looks at nominal values only; ``modes``: only these; ``plan``:
-    samples to draw besides.
+    samples to draw besides; ``workers``: where modes, corners and samples are solved.  Where the workers are told to
+    stop, what is done so far comes back as a partial audit, which never passes.
     Raises InputError for a policy that cannot be read.
     """
     loaded = load_policy(policy) if isinstance(policy, str) else policy
     chosen = tuple(c for c in board.circuits if not modes or c.mode in modes)
     options = Options(loaded, nominal, len(chosen) < len(board.circuits), plan)
     board = replace(board, circuits=chosen)
-    operations = [(op := Operation(c), op.result()) for c in chosen]
+    operations = _kept(workers.each(_operated, chosen, "operating points"))
     known = context(board, [result for _, result in operations])
-    audits = [_audit_mode(board, op, result, options, known) for op, result in operations]
-    return _joined(board, audits, options)
+    items = [item for op, _ in operations for item in watched(op.solver, loaded)]
+    pieces = [_Mode(board, op, result, options, known) for op, result in operations]
+    audits = _kept(workers.each(_audit_mode, pieces, "worst cases"))
+    return _joined(board, audits, items, options)
 
 
-def _joined(board: Board, audits: Sequence[ModeAudit], options: Options) -> Audit:
-    items: dict[object, Watched] = {}
-    for one in audits:
-        for item in one.watched:
-            items.setdefault(item.key, item)
-    every = list(items.values())
+def _operated(circuit: Circuit, workers: Workers) -> tuple[Operation, ModeResult]:
+    operation = Operation(circuit)
+    return operation, operation.result()
+
+
+def _kept(results: Iterator[Kept]) -> list[Kept]:
+    """The results up to an interruption."""
+    kept: list[Kept] = []
+    with suppress(Interrupted):
+        kept.extend(results)
+    return kept
+
+
+def _joined(board: Board, audits: Sequence[ModeAudit], items: Sequence[Watched], options: Options) -> Audit:
+    partial = _partial(board, audits)
+    distinct: dict[object, Watched] = {}
+    for item in items:
+        distinct.setdefault(item.key, item)
+    every = list(distinct.values())
     stresses = [s for one in audits for s in one.stresses]
     found = [*structural(board), *(f for one in audits for f in one.findings)]
-    if not options.partial:
+    if not options.partial and not partial:
         lit = {s.device for s in stresses if s.quantity == "forward-current" and s.worst > CONDUCTS}
         found += never_conducts([one.result for one in audits], lit)
     found += [*rating_notes(every), *spread_note(board, options.nominal)]
@@ -97,7 +130,7 @@ def _joined(board: Board, audits: Sequence[ModeAudit], options: Options) -> Audi
         ordered(_distinct(found)),
         tuple(sorted(stresses, key=_worst_first)),
         covered,
-        not covered.not_audited and not unsolved,
+        not covered.not_audited and not unsolved and not partial,
         options.nominal,
         tuple(sorted({d.part.name for d in fitted(board).values() if d.part is not None and d.part.generic})),
         _without_row(every, options.policy),
@@ -105,7 +138,21 @@ def _joined(board: Board, audits: Sequence[ModeAudit], options: Options) -> Audi
         options.plan,
         tuple(s for one in audits for s in one.samples),
         part_rows(board),
+        partial,
     )
+
+
+def _partial(board: Board, audits: Sequence[ModeAudit]) -> str:
+    """What an interruption left undone, in a sentence; empty where everything was done."""
+    done = {one.result.mode for one in audits if not one.cut}
+    begun = [one.result.mode for one in audits if one.cut]
+    missing = [c.mode for c in board.circuits if c.mode not in done and c.mode not in begun]
+    said = []
+    if begun:
+        said.append(f"the search for worst corners was cut short in mode {', '.join(begun)}")
+    if missing:
+        said.append(f"mode {', '.join(missing)} was not audited")
+    return f"interrupted: {'; '.join(said)}" if said else ""
 
 
 def _without_row(items: Sequence[Watched], policy: Policy) -> tuple[str, ...]:
@@ -134,27 +181,28 @@ def _worst_first(s: Stress) -> tuple[int, float]:
     return (0, -s.worst) if s.limit is not None else (2, 0.0)
 
 
-def _audit_mode(board: Board, operation: Operation, result: ModeResult, options: Options, known: Context) -> ModeAudit:
+def _audit_mode(mode: _Mode, workers: Workers) -> ModeAudit:
+    board, operation, result, options = mode.board, mode.operation, mode.result, mode.options
     items = watched(operation.solver, options.policy)
-    out = ModeAudit(result, [], [], items, {})
+    out = ModeAudit(result, [], [], {})
     if not result.points:
         out.findings.append(_none_found(result))
         return out
     out.findings += _several(result)
     tasks = [
-        *point_tasks(operation.circuit, known),
+        *point_tasks(operation.circuit, mode.known),
         *expectation_tasks(board, operation.circuit, frozenset(operation.system.index_of)),
         *package_tasks(operation.circuit, options.policy, out.stresses.append),
     ]
     for nominal, point in zip(operation.boards, result.points, strict=True):
         if point.stable is False:
             continue
-        explorer = Explorer(operation.solver, nominal, options.nominal)
+        explorer = Explorer(operation.solver, nominal, options.nominal, workers)
         _explore(explorer, items, tasks, out, None)
         out.findings += thermal_findings(operation, explorer, result, point)
         if options.plan is not None and explorer.spans:
-            out.samples += _sampled(explorer, items, options.plan, result.mode)
-    _variants(operation.circuit, out, options)
+            out.samples += _sampled(explorer, items, options.plan, out)
+    _variants(operation.circuit, out, options, workers)
     out.stresses = _worst_of(out.stresses)
     devices = {d.name: d for d in operation.circuit.devices} | package_devices(operation.circuit)
     for stress in _told_once(out.stresses):
@@ -162,14 +210,19 @@ def _audit_mode(board: Board, operation: Operation, result: ModeResult, options:
     return out
 
 
-def _sampled(explorer: Explorer, items: Sequence[Watched], plan: Plan, mode: str) -> Iterable[SampledStress]:
-    """Statistics of every rated stress over drawn boards."""
+def _sampled(explorer: Explorer, items: Sequence[Watched], plan: Plan, out: ModeAudit) -> Iterable[SampledStress]:
+    """Statistics of every rated stress over drawn boards; none where they were interrupted."""
     rated = [
         (i, o) for i in items if not i.limit.missing and i.check.quantity != "reverse-polarity" for o in i.objectives()
     ]
-    found = sample(explorer.solver, explorer.boards[0], explorer.spans, [o for _, o in rated], plan)
+    ratios = [o for _, o in rated]
+    try:
+        found = sample(explorer.solver, explorer.boards[0], explorer.spans, ratios, plan, explorer.workers)
+    except Interrupted:
+        out.cut = True
+        return
     for (item, _), statistics in zip(rated, found, strict=True):
-        yield SampledStress(item.device.name, item.check.quantity, mode, statistics)
+        yield SampledStress(item.device.name, item.check.quantity, out.result.mode, statistics)
 
 
 def _told_once(stresses: Sequence[Stress]) -> Iterable[Stress]:
@@ -188,6 +241,7 @@ def _explore(
     out.units |= {v.key: v.quantity.unit for v in explorer.spans}
     objectives = [item.objectives() for item in items]
     extremes = explorer.extremes([*(o for some in objectives for o in some), *(task.objective for task in tasks)])
+    out.cut |= explorer.cut
     nominal: Solved = explorer.boards[0].pick(0)
     left = iter(extremes)
     for item, some in zip(items, objectives, strict=True):
@@ -228,7 +282,7 @@ def _badness(s: Stress) -> tuple[bool, float, float]:
     return (beyond(s) is not None and s.ratio is None, s.ratio or 0.0, s.worst * s.direction)
 
 
-def _variants(circuit: Circuit, out: ModeAudit, options: Options) -> None:
+def _variants(circuit: Circuit, out: ModeAudit, options: Options, workers: Workers) -> None:
     """The mode once more for each supply that is fed back, with that supply neither delivering nor absorbing."""
     fed = {f.device for f in out.findings if f.rule == "point/back-feed"}
     for name in sorted(n for n in fed if n is not None):
@@ -243,7 +297,7 @@ def _variants(circuit: Circuit, out: ModeAudit, options: Options) -> None:
         if not result.points:
             out.findings.append(replace(_none_found(result), variant=variant))
             continue
-        explorer = Explorer(operation.solver, operation.boards[0], options.nominal)
+        explorer = Explorer(operation.solver, operation.boards[0], options.nominal, workers)
         _explore(explorer, watched(operation.solver, options.policy), [], out, variant)
 
 

@@ -14,8 +14,9 @@ from netaudit.place import Place
 class BoardResult:
     """One board: its audit, or why it could not be read (``error``, with its place where it has one).
 
-    ``failed`` is its verdict at the level ``fail_on``.  An audit that comes from the cache has the results of its modes in outline only: points
-    are counted, devices left out (a report that needs them says so in ``netaudit.report.formats``).
+    ``interrupted``: it was not reached. ``failed`` is its verdict at the level ``fail_on``. An audit that comes
+    from the cache has the results of its modes in outline only: points are counted, devices left out (a report that
+    needs them says so in ``netaudit.report.formats``).
     """
 
     name: str
@@ -24,6 +25,7 @@ class BoardResult:
     error: str = ""
     place: Place | None = None
     fail_on: Level = "error"
+    interrupted: bool = False
 
     def counts(self, finding: Finding) -> bool:
         """Whether a finding makes the board fail."""

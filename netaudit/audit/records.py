@@ -93,7 +93,7 @@ class Audit:
     """The audit of one board.
 
     ``generic``: parts whose rows are generic classes; ``without_row``: quantities of which the policy does not speak
-    (their factor is 1); ``units`` of the keys that stand in corners.
+    (their factor is 1); ``units`` of the keys that stand in corners; ``partial``: what an interruption left undone.
     """
 
     board: Board
@@ -110,8 +110,12 @@ class Audit:
     plan: Plan | None = None
     samples: tuple[SampledStress, ...] = ()
     parts: tuple[PartRow, ...] = ()
+    partial: str = ""
 
     def fails(self, level: Level = "error", require_complete: bool = False) -> bool:
-        """Whether something stands at or above the level, or is missing where completeness is required."""
+        """Whether something stands at or above the level, or is missing where completeness is required; an interrupted
+        audit always fails."""
+        if self.partial:
+            return True
         worst = max((rank(f.level) for f in self.findings if f.waived is None), default=-1)
         return worst >= rank(level) or (require_complete and not self.complete)

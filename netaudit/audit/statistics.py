@@ -8,15 +8,17 @@ of one correlated group move together.  All samples are solved as one array prog
 from __future__ import annotations
 
 from collections.abc import Callable, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Literal
 
 import numpy as np
 
+from netaudit.audit.worst import Rows, settle
 from netaudit.devices.base import Array
-from netaudit.solve.sensitivity import Variable, assign, chunks
-from netaudit.solve.settle import Job, Solver
+from netaudit.solve.sensitivity import Variable, chunks
+from netaudit.solve.settle import Solver
 from netaudit.solve.solved import Solved
+from netaudit.workers import IN_PROCESS, Workers
 
 Method = Literal["sobol", "latin-hypercube", "plain"]
 Distribution = Literal["uniform", "normal"]
@@ -80,34 +82,29 @@ def _group_numbers(spans: Sequence[Variable], together: Sequence[Sequence[str]])
 
 
 def sample(
-    solver: Solver, nominal: Solved, spans: Sequence[Variable], ratios: Sequence[Callable[[Solved], Array]], plan: Plan
-) -> list[Sampled]:
-    """Statistics of every ratio (stress over limit) over the drawn boards; ``nominal`` is a batch of one."""
-    solver.prepare(nominal)
-    values = draw(spans, plan)
-    columns = np.full((plan.count, len(ratios)), np.nan)
-    size = chunks(solver, plan.count)
-    for start in range(0, plan.count, size):
-        rows = slice(start, min(start + size, plan.count))
-        columns[rows] = _solve(solver, nominal, spans, values[rows], ratios)
-    return [_statistics(columns[:, k], values, spans) for k in range(len(ratios))]
-
-
-def _solve(
     solver: Solver,
     nominal: Solved,
     spans: Sequence[Variable],
-    values: Array,
     ratios: Sequence[Callable[[Solved], Array]],
-) -> Array:
-    count = len(values)
-    overrides, air = assign(spans, values, solver.system.circuit.ambient.nominal)
-    ambient = np.broadcast_to(np.asarray(air, dtype=float), (count,))
-    rise = nominal.temperature - np.asarray(nominal.ambient, dtype=float).reshape(-1, 1)
-    job = Job(overrides, ambient, count, np.repeat(nominal.u, count, axis=0), rise + ambient[:, None])
-    settled = solver.settle(job)
-    out = np.stack([np.broadcast_to(f(settled.solved), (count,)) for f in ratios], axis=-1)
-    return np.where(settled.converged[:, None], out, np.nan)
+    plan: Plan,
+    workers: Workers = IN_PROCESS,
+) -> list[Sampled]:
+    """Statistics of every ratio (stress over limit) over the drawn boards; ``nominal`` is a batch of one.
+
+    Raises Interrupted where the workers are told to stop: half of a sample has another confidence than was asked for.
+    """
+    solver.prepare(nominal)
+    values = draw(spans, plan)
+    size = chunks(solver, plan.count)
+    parts = [values[start : start + size] for start in range(0, plan.count, size)]
+    pieces = [Rows(solver, tuple(spans), nominal, part, True) for part in parts]
+    columns = []
+    for settled in workers.each(settle, pieces, "samples"):
+        solved, count = replace(settled.solved, system=solver.system), len(settled.converged)
+        out = np.stack([np.broadcast_to(f(solved), (count,)) for f in ratios], axis=-1)
+        columns.append(np.where(settled.converged[:, None], out, np.nan))
+    table = np.concatenate(columns)
+    return [_statistics(table[:, k], values, spans) for k in range(len(ratios))]
 
 
 def _statistics(ratio: Array, values: Array, spans: Sequence[Variable]) -> Sampled:

@@ -9,7 +9,7 @@ extreme is found by a bounded search along that value.  Every vertex solved serv
 from __future__ import annotations
 
 from collections.abc import Callable, Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from itertools import product
 from typing import Literal
 
@@ -17,8 +17,9 @@ import numpy as np
 
 from netaudit.devices.base import Array
 from netaudit.solve.sensitivity import Variable, assign, chunks, moved, steps, variables
-from netaudit.solve.settle import Job, Solver
+from netaudit.solve.settle import Job, Settled, Solver
 from netaudit.solve.solved import Solved
+from netaudit.workers import IN_PROCESS, Interrupted, Workers
 
 Proof = Literal["proven", "bounded", "checked"]
 Objective = Callable[[Solved], Array]
@@ -47,11 +48,35 @@ class Extreme:
     bound: float | None = None
 
 
+@dataclass(frozen=True)
+class Rows:
+    """Rows of values (members, variables) to be solved as one batch, started from a board (a batch of one)."""
+
+    solver: Solver
+    spans: tuple[Variable, ...]
+    start: Solved
+    values: Array
+    remedies: bool
+
+
+def settle(rows: Rows, workers: Workers) -> Settled:
+    """Solves them; a piece of work for ``Workers.each``."""
+    start, count = rows.start, len(rows.values)
+    overrides, air = assign(rows.spans, rows.values, rows.solver.system.circuit.ambient.nominal)
+    rise = start.temperature - np.asarray(start.ambient, dtype=float).reshape(-1, 1)
+    ambient = np.broadcast_to(np.asarray(air, dtype=float), (count,))
+    job = Job(overrides, ambient, count, np.repeat(start.u, count, axis=0), rise + ambient[:, None])
+    return rows.solver.settle(job, rows.remedies)
+
+
 class Explorer:
     """Explores the box of one solved operating point (``nominal``: a batch of one)."""
 
-    def __init__(self, solver: Solver, nominal: Solved, nominal_only: bool = False) -> None:
+    def __init__(
+        self, solver: Solver, nominal: Solved, nominal_only: bool = False, workers: Workers = IN_PROCESS
+    ) -> None:
         self.solver = solver
+        self.workers = workers
         self.spans: tuple[Variable, ...] = () if nominal_only else variables(solver)
         if self.spans:
             solver.prepare(nominal)
@@ -67,6 +92,8 @@ class Explorer:
         #: corners at which no operating point was found
         self.failures: list[dict[str, float]] = []
         self._lost: set[bytes] = set()
+        #: whether the exploration was interrupted: extremes are then those of what was solved so far
+        self.cut = False
 
     def extremes(self, objectives: Sequence[Objective]) -> list[Extreme]:
         """The largest value of each objective over the box."""
@@ -76,15 +103,20 @@ class Explorer:
         if not self.spans:
             values = self._table(objectives)
             return [Extreme(float(values[0, k]), self._board(0), {}, "proven") for k in range(len(objectives))]
+        try:
+            self._search(objectives)
+        except Interrupted:
+            self.cut = True
+        table = self._table(objectives)
+        best = np.nanargmax(table, axis=0)
+        self._gradients(objectives, sorted(set(best.tolist())))
+        return [self._extreme(table, int(best[k]), k) for k in range(len(objectives))]
+
+    def _search(self, objectives: Sequence[Objective]) -> None:
         if len(self.spans) <= _ALL_VERTICES:
             self._solve([np.array(v) for v in product(*zip(self.low, self.high, strict=True))])
         self._climb(objectives)
-        table = self._table(objectives)
-        best = np.nanargmax(table, axis=0)
-        best = self._inside(objectives, best)
-        table = self._table(objectives)
-        self._gradients(objectives, sorted(set(best.tolist())))
-        return [self._extreme(table, int(best[k]), k) for k in range(len(objectives))]
+        self._inside(objectives, np.nanargmax(self._table(objectives), axis=0))
 
     def _extreme(self, table: Array, row: int, k: int) -> Extreme:
         """The extreme with its corner: the values that have an influence on this quantity somewhere looked at."""
@@ -123,7 +155,7 @@ class Explorer:
                 count *= 2
         return out
 
-    def _inside(self, objectives: Sequence[Objective], best: np.ndarray) -> np.ndarray:
+    def _inside(self, objectives: Sequence[Objective], best: np.ndarray) -> None:
         """Bounded searches along values whose sensitivity at the best row points back into the box.
 
         Every objective searches along its own values, one after the other; all objectives share each batch.
@@ -133,14 +165,13 @@ class Explorer:
             gradients = self._gradients(objectives, sorted(set(best.tolist())))
             todo = {k: self._inward(gradients[int(best[k])][k], int(best[k])) for k in range(len(objectives))}
             if not any(todo.values()):
-                return best
+                return
             before = self._table(objectives)[best, np.arange(len(objectives))]
             for turn in range(max(len(columns) for columns in todo.values())):
                 self._zoom(objectives, best, {k: cs[turn] for k, cs in todo.items() if turn < len(cs)})
             after = self._table(objectives)[best, np.arange(len(objectives))]
             if not (after > before * (1 + 1e-9 * np.sign(before))).any():
-                return best
-        return best
+                return
 
     def _inward(self, gradient: Array, row: int) -> list[int]:
         """The values whose sensitivity points into the box, the most influential ones first."""
@@ -223,34 +254,34 @@ class Explorer:
         """
         keys = {row.tobytes(): row for row in wanted}
         rows = [row for key, row in keys.items() if key not in self.known and key not in self._lost]
-        size = chunks(self.solver, len(rows)) if rows else 1
-        missed: list[Array] = []
-        for start in range(0, len(rows), size):
-            missed += self._solve_batch(np.array(rows[start : start + size]), self.boards[0])
+        if not rows:
+            return
+        missed = self._solve_batches(rows, self.boards[0])
         self._lost |= {row.tobytes() for row in missed}
         while missed and remedies and len(self.failures) < _VAIN:
             row = missed.pop(0)
-            if self._solve_batch(row[None], self.boards[0], remedies=True):
+            if self._solve_batches([row], self.boards[0], remedies=True):
                 self.failures.append({v.key: float(row[c]) for c, v in enumerate(self.spans)})
             elif missed:
-                missed = self._solve_batch(np.array(missed), self.boards[-1])
+                missed = self._solve_batches(missed, self.boards[-1])
 
-    def _solve_batch(self, values: Array, near: Solved, remedies: bool = False) -> list[Array]:
-        """Solves rows as one batch, each started from a solved board; gives those without an operating point."""
-        overrides, air = assign(self.spans, values, self.solver.system.circuit.ambient.nominal)
-        count = len(values)
-        rise = near.temperature - np.asarray(near.ambient, dtype=float).reshape(-1, 1)
-        ambient = np.broadcast_to(np.asarray(air, dtype=float), (count,))
-        job = Job(overrides, ambient, count, np.repeat(near.u, count, axis=0), rise + ambient[:, None])
-        settled = self.solver.settle(job, remedies)
-        batch = len(self.boards)
-        self.boards.append(settled.solved)
-        for member in np.flatnonzero(settled.converged):
-            row = values[member]
-            self.known[row.tobytes()] = len(self.rows)
-            self.rows.append(row)
-            self.member.append((batch, int(member)))
-        return [values[member] for member in np.flatnonzero(~settled.converged)]
+    def _solve_batches(self, rows: Sequence[Array], near: Solved, remedies: bool = False) -> list[Array]:
+        """Solves rows as batches, each row started from a solved board; gives those without an operating point."""
+        size = chunks(self.solver, len(rows))
+        parts = [np.array(rows[start : start + size]) for start in range(0, len(rows), size)]
+        pieces = [Rows(self.solver, self.spans, near, part, remedies) for part in parts]
+        missed: list[Array] = []
+        for values, settled in zip(parts, self.workers.each(settle, pieces, "corners"), strict=True):
+            batch = len(self.boards)
+            # a worker sends its own copy of the system back: one is enough
+            self.boards.append(replace(settled.solved, system=self.solver.system))
+            for member in np.flatnonzero(settled.converged):
+                row = values[member]
+                self.known[row.tobytes()] = len(self.rows)
+                self.rows.append(row)
+                self.member.append((batch, int(member)))
+            missed += [values[member] for member in np.flatnonzero(~settled.converged)]
+        return missed
 
     def _gradients(self, objectives: Sequence[Objective], rows: Sequence[int]) -> dict[int, Array]:
         """Signed influences at some rows, {row: (objectives, variables)}: the change of each objective for a small

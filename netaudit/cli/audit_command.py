@@ -7,9 +7,10 @@ import sys
 from typing import TYPE_CHECKING, Any
 
 from netaudit import __version__
-from netaudit.cli.common import FLAG, add_fail_on, add_files, add_modes, complain, deliver, shown
+from netaudit.cli.common import FLAG, add_fail_on, add_files, add_modes, complain, deliver
 from netaudit.cli.reports import add_reports, wanted, write_reports
-from netaudit.cli.settings import add_cache, cache_of, jobs_of, targets
+from netaudit.cli.settings import add_cache, cache_of, jobs_of, targets, workers_of
+from netaudit.cli.work import add_workers, at_work
 from netaudit.report.style import Style
 
 if TYPE_CHECKING:
@@ -27,6 +28,7 @@ def add(commands: Any) -> None:
     add_modes(command)
     add_fail_on(command)
     add_reports(command)
+    add_workers(command)
     add_cache(command)
     command.add_argument(
         "--nominal", action=FLAG, help="nominal values only: no ranges, no tolerances (default: worst case)"
@@ -66,10 +68,11 @@ def run(options: argparse.Namespace) -> int:
     jobs = jobs_of(options, files)
     live = any(report.format.live for report in reports)
     results: list[BoardResult] = []
-    for result in shown(run_jobs(jobs, cache_of(options, files), live), len(jobs)):
-        results.append(result)
-        if result.audit is None:
-            complain(result.error, result.place)
+    with at_work(workers_of(options, files), options.cluster) as workers:
+        for result in run_jobs(jobs, cache_of(options, files), live, workers):
+            results.append(result)
+            if result.audit is None:
+                complain(result.error, result.place)
     # the whole project was looked at only when no files were named
     lost = () if options.files else homeless(jobs[0].verdict.waivers, (job.verdict.board for job in jobs))
     batch = Batch(tuple(results), __version__, lost)
@@ -78,7 +81,7 @@ def run(options: argparse.Namespace) -> int:
         text = text or _text(options, batch)
     if text:
         deliver(text, options.output)
-    return max(int(batch.failed), *(2 if r.audit is None else 0 for r in results))
+    return max(int(batch.failed), *(2 if r.audit is None and not r.interrupted else 0 for r in results))
 
 
 def _text(options: argparse.Namespace, batch: Batch) -> str:

@@ -118,14 +118,13 @@ def workers_of(options: argparse.Namespace, files: Sequence[Target]) -> int:
     count: int = stated(options.workers, project, lambda p: p.workers, 1)
     if not 0 <= count <= 256:
         raise InputError(f"--workers {count}", mend="between 0 and 256")
-    return count or len(os.sched_getaffinity(0))
+    return count
 
 
 def add_cache(command: argparse.ArgumentParser) -> None:
     command.add_argument(
         "--cache", metavar="FOLDER", help="keep the audits of boards there; only changed ones are solved"
     )
-    command.add_argument("--workers", type=int, metavar="N", help="boards at a time; 0: every processor (default: 1)")
     command.add_argument("--no-cache", action="store_true", help="solve every board anew, keep nothing")
 
 

@@ -13,6 +13,7 @@ from netaudit.failure import InputError
 from netaudit.finding import Level
 from netaudit.gate.waive import waived_audit
 from netaudit.gate.waivers import Waivers
+from netaudit.workers import IN_PROCESS, Workers
 
 
 @dataclass(frozen=True)
@@ -48,12 +49,12 @@ class Job:
     verdict: Verdict = field(default_factory=Verdict)
 
 
-def solve(job: Job) -> Audit:
+def solve(job: Job, workers: Workers = IN_PROCESS) -> Audit:
     """The audit of a job's board.  Raises InputError for a board, policy or mode that cannot be used."""
     from netaudit.interface import LoadedBoard
 
     board = load_board(job.path, job.root, job.changes)
-    return LoadedBoard(board).audit(job.policy, job.nominal, job.modes, job.plan)
+    return LoadedBoard(board).audit(job.policy, job.nominal, job.modes, job.plan, workers)
 
 
 def judged(job: Job, found: Audit) -> BoardResult:
@@ -68,3 +69,9 @@ def judged(job: Job, found: Audit) -> BoardResult:
 def refused(job: Job, error: InputError) -> BoardResult:
     """What stands for a board that could not be read."""
     return BoardResult(job.path, None, True, str(error), error.place, job.verdict.fail_on)
+
+
+def unreached(job: Job) -> BoardResult:
+    """What stands for a board that an interruption left unaudited."""
+    said = f"{job.path}: not audited: interrupted before its turn"
+    return BoardResult(job.path, None, True, said, None, job.verdict.fail_on, True)

@@ -141,6 +141,7 @@ def audit_record(audit: Audit, failed: bool, version: str) -> dict[str, Any]:
         "policy": audit.policy,
         "verdict": "fail" if failed else "pass",
         "complete": audit.complete,
+        "partial": audit.partial or None,
         "nominal": audit.nominal,
         "coverage": {
             "parts": c.parts,

@@ -82,7 +82,10 @@ def lint_text(board: Board, findings: Sequence[Finding], failed: bool, style: St
 
 def audit_text(audit: Audit, failed: bool, style: Style, notes: bool, version: str) -> str:
     """The report of ``audit``: verdict, coverage, findings worst first, stresses, how sure it is, cautions."""
-    lines = [*_headline(audit.board, failed, style, "audit", audit.complete), *_coverage(audit, style), ""]
+    lines = [*_headline(audit.board, failed, style, "audit", audit.complete), *_coverage(audit, style)]
+    if audit.partial:
+        lines += wrapped(f"Partial, and so no pass: {audit.partial}.", style.width, "")
+    lines.append("")
     lines += findings_text(audit.findings, style, notes)
     lines += ["", *_stresses(audit, style), ""]
     if audit.plan is not None:

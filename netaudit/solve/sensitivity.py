@@ -21,8 +21,10 @@ from netaudit.solve.solved import Solved
 
 #: step of a value as a share of its span: small enough to be local, large against rounding
 SHARE = 1e-4
-#: numbers held at once while many members are moved
-_BUDGET = 4_000_000
+#: numbers held at once while many members are moved, and members at most in one batch
+_BUDGET, _MEMBERS = 4_000_000, 4096
+#: the same of a large circuit, which is solved member by member
+_SPARSE_MEMBERS = 64
 
 
 @dataclass(frozen=True)
@@ -111,9 +113,10 @@ def _with_heat(solver: Solver, solved: Solved, d: Array, dx: Array) -> tuple[Arr
 
 
 def chunks(solver: Solver, members: int) -> int:
-    """How many members may be moved at once within the memory budget."""
+    """How many of so many members are taken at once within the memory budget: a piece of work."""
     system = solver.system
     width = len(system.g_row) + len(system.s_row) + len(system.a_row) + system.n
-    if isinstance(solver.linear, Dense):
+    dense = isinstance(solver.linear, Dense)
+    if dense:
         width += system.n * (system.n + system.m)
-    return max(1, min(members, _BUDGET // max(width, 1)))
+    return max(1, min(members, _BUDGET // max(width, 1), _MEMBERS if dense else _SPARSE_MEMBERS))
