@@ -119,7 +119,7 @@ class Workers:
     def close(self) -> None:
         """Lets the workers go."""
         if self._executor is not None:
-            self._executor.shutdown(wait=True, cancel_futures=True)
+            self._executor.shutdown(wait=True)
 
 
 IN_PROCESS = Workers()

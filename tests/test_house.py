@@ -25,7 +25,7 @@ ROOMS = [
     "gate",
     "cli",
 ]
-HEAVY = {"scipy", "networkx", "rich"}
+HEAVY = {"scipy", "networkx", "rich", "distributed"}
 TOP = {"README.md", "DEVELOPERS.md", "pyproject.toml", "netaudit", "grammar", "tests", "sample_netlists", "LICENSE"}
 FILES = sorted(PACKAGE.rglob("*.py"))
 
