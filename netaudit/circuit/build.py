@@ -12,7 +12,8 @@ from netaudit.failure import InputError
 from netaudit.finding import Finding
 from netaudit.parts.names import PARAMETERS
 from netaudit.parts.part import Part, Rating
-from netaudit.parts.tables import PartTable, inline_rating
+from netaudit.parts.ratings import inline_rating
+from netaudit.parts.tables import PartTable
 from netaudit.place import Place
 from netaudit.quantities.quantity import Quantity
 from netaudit.quantities.read import combine, read_at, read_quantity

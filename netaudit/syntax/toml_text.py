@@ -40,11 +40,11 @@ class TomlText:
     def _spots(self) -> dict[Path, int]:
         """Offset of each heading and key by its path; the first mention counts."""
         spots: dict[Path, int] = {}
-        for path, offset in _mentions(self.text):
+        for path, offset in mentions(self.text):
             for size in range(1, len(path) + 1):
                 spots.setdefault(path[:size], offset)
         # a heading of its own is a better place for a table than that of its first sub-table
-        for path, offset in _mentions(self.text):
+        for path, offset in mentions(self.text):
             if self.text[offset] == "[":
                 spots[path] = offset
         return spots
@@ -60,7 +60,7 @@ class TomlText:
     def rows(self, name: str) -> tuple[dict[str, Place], ...]:
         """For each ``[[name]]`` heading the places of its keys; that of the heading itself under the empty name."""
         found: list[dict[str, Place]] = []
-        for path, offset in _mentions(self.text):
+        for path, offset in mentions(self.text):
             if path[:1] != (name,):
                 continue
             if self.text.startswith("[[", offset) and len(path) == 1:
@@ -99,7 +99,7 @@ def _hint(message: str) -> str:
     return "check this line: [NAME], then key = value"
 
 
-def _mentions(text: str) -> Iterator[tuple[Path, int]]:
+def mentions(text: str) -> Iterator[tuple[Path, int]]:
     """(path, offset) of every heading and of every key outside inline tables."""
     heading: Path = ()
     keys: list[str] = []
