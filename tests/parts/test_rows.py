@@ -108,7 +108,7 @@ def test_places_of_headings_sub_tables_and_several_pieces(tmp_path: Path) -> Non
     with pytest.raises(InputError, match="cannot be negative") as caught:
         part(tmp_path, text)
     assert str(caught.value.place) == "p.toml:7:3"
-    with pytest.raises(InputError, match="twice|overwrite") as caught:
+    with pytest.raises(InputError, match=r"twice|overwrite") as caught:
         part(tmp_path, "[B]\nn = 1\n[A]\nn = 1\nn = 2\n")
     assert caught.value.place is not None
     assert caught.value.place.line == 5
