@@ -108,6 +108,10 @@ class Assembly(Protocol):
         """True where a resistance of this device must be solved with its current as an unknown (it is low against its
         neighbours, so that a difference of two node voltages would not carry its current)."""
 
+    @property
+    def least_ohms(self) -> float:
+        """The least resistance to stamp: above 0 in loops of shorts, in which nothing else would say how current shares."""
+
 
 def conductance(a: Assembly, p: int, q: int, g: Value) -> None:
     """A linear conductance g (siemens) between two nodes."""
@@ -119,6 +123,8 @@ def conductance(a: Assembly, p: int, q: int, g: Value) -> None:
 
 def resistance(a: Assembly, p: int, q: int, r: Value, name: str = "i") -> int:
     """A resistance r (ohm, 0 allowed) from p to q with its current (into p) as an unknown: v_p - v_q - r i = 0."""
+    if a.least_ohms:
+        r = np.maximum(r, a.least_ohms)
     i = a.unknown(name)
     a.add(p, i, 1.0)
     a.add(q, i, -1.0)

@@ -12,7 +12,6 @@ import numpy as np
 
 from netaudit.solve.solved import Solved
 
-
 #: the smallest current that a result states (A): pin currents hold within 1e-9 relative or this
 _CLAIMED = 1e-15
 

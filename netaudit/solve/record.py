@@ -35,14 +35,20 @@ class Recorder:
         self._inner: dict[tuple[int, str], int] = {}
         self._device = -1
         self.carry = False
+        self.least = 0.0
 
-    def begin(self, device: int, pins: dict[str, int], carry: bool) -> None:
-        """The next device: its number, its pins' numbers, and whether its resistance needs a current unknown."""
-        self._device, self._pins, self.carry = device, pins, carry
+    def begin(self, device: int, pins: dict[str, int], carry: bool, least: float) -> None:
+        """The next device: its number, its pins' numbers, whether its resistance needs a current unknown, and the least
+        resistance that it is stamped with."""
+        self._device, self._pins, self.carry, self.least = device, pins, carry, least
 
     @property
     def carry_current(self) -> bool:
         return self.carry
+
+    @property
+    def least_ohms(self) -> float:
+        return self.least
 
     def pin(self, name: str) -> int:
         return self._pins[name]

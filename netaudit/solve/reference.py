@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 
 from netaudit.circuit.circuit import Circuit
+from netaudit.circuit.loops import stiff_loops
 from netaudit.devices import KINDS
 from netaudit.devices.base import Device
 
@@ -21,7 +22,7 @@ def references(circuit: Circuit, devices: Sequence[Device], nets: Sequence[str])
     In an island that nothing joins to a reference only differences have a meaning; its busiest net becomes 0 V.  No
     current can flow through that choice, since nothing else leads out of the island.
     """
-    parent = {net: net for net in nets}
+    parent = {net: net for net in (*nets, *circuit.grounds)}
 
     def find(net: str) -> str:
         while parent[net] != net:
@@ -71,6 +72,15 @@ def carried(devices: Sequence[Device]) -> frozenset[str]:
         if r < 1.0 or any(1.0 / r > _RATIO * (total[net] - 1.0 / r) for net in device.pins.values()):
             out.add(device.name)
     return frozenset(out)
+
+
+def shared(devices: Sequence[Device]) -> frozenset[str]:
+    """Devices of 0 ohm in loops without a supply: the voltages are fine, but the current's share is undetermined.
+
+    Each of them gets the same small resistance when it is stamped, so that the current shares evenly.
+    """
+    loops = (loop for loop in stiff_loops(devices) if all(d.kind != "supply" for d in loop))
+    return frozenset(d.name for loop in loops for d in loop)
 
 
 def _ohms(device: Device) -> float:

@@ -19,11 +19,14 @@ from netaudit.devices.base import Array, Device, Value, Values
 from netaudit.devices.families import Family
 from netaudit.solve.branches import BranchGroups
 from netaudit.solve.record import Recorder, stack
-from netaudit.solve.reference import carried, references
+from netaudit.solve.reference import carried, references, shared
 from netaudit.solve.segment import SegmentSum
 
 Index = NDArray[np.intp]
 Overrides = Mapping[tuple[str, str], Value]
+
+#: stamped in place of 0 in loops of shorts (ohm): far below any real contact, far above the rounding of a voltage
+_SHARED_OHMS = 1e-6
 
 
 @dataclass(frozen=True)
@@ -80,6 +83,7 @@ class System:
         self.pin_net: Index = np.array([self.net_of[self.devices[k].pins[p]] for k, p in self.pins], dtype=np.intp)
         self.reference_nets = references(circuit, self.devices, self.nets)
         self.carry = carried(self.devices)
+        self.shared = shared(self.devices)
         self._structure(self._stamp({}, None, None))
 
     def _stamp(self, overrides: Overrides, temperature: Array | None, ambient: Value | None) -> Recorder:
@@ -93,7 +97,8 @@ class System:
             numbers: dict[str, Value] = {name: q.nominal for name, q in device.values.items()}
             numbers.update(changed.get(device.name, {}))
             t: Value = air if temperature is None else temperature[..., k]
-            record.begin(k, self.pin_numbers[k], device.name in self.carry)
+            least = _SHARED_OHMS if device.name in self.shared else 0.0
+            record.begin(k, self.pin_numbers[k], device.name in self.carry, least)
             KINDS[device.kind].stamp(device, Values(numbers, t, air), record)
         return record
 

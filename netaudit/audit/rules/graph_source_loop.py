@@ -27,17 +27,18 @@ from __future__ import annotations
 from collections.abc import Iterable
 
 from netaudit.audit.rule import Rule, Site, about, listed
-from netaudit.circuit.graph import Graph, Islands, stiff_pairs
+from netaudit.circuit.loops import stiff_loops
 from netaudit.devices.base import Device
 from netaudit.finding import Finding
-
-Tree = dict[str, list[tuple[str, Device]]]
 
 
 def find(site: Site) -> Iterable[Finding]:
     shorted: dict[str, list[list[Device]]] = {}
-    for loop in _loops(site.graph):
+    for loop in stiff_loops(site.graph.circuit.devices):
         supply = next((d for d in loop if d.kind == "supply"), None)
+        if len(loop) == 1 and (supply is None or supply.nominal("value", 0.0) == 0.0):
+            # both ends on one net: a part without effect, which graph/bridged-part names
+            continue
         if supply is None:
             names = listed(d.name for d in loop)
             text = f"how the current shares between {names} is unknown: give them their resistances"
@@ -51,42 +52,6 @@ def find(site: Site) -> Iterable[Finding]:
         if loops == [[supply]]:
             text = f"supply {supply.name} is shorted: both its pins are on net {supply.pins['+']}"
         yield Finding(RULE.name, RULE.level, text, **about(supply))
-
-
-def _loops(graph: Graph) -> Iterable[list[Device]]:
-    """One loop for each stiff branch that closes one; supplies are laid first, so that a short shows the supply."""
-    islands = Islands(graph.on_net)
-    tree: Tree = {}
-    branches = [(d, a, b) for d in graph.circuit.devices for a, b in stiff_pairs(d)]
-    for device, pin_a, pin_b in sorted(branches, key=lambda branch: branch[0].kind != "supply"):
-        a, b = device.pins[pin_a], device.pins[pin_b]
-        if a == b:
-            if device.kind == "supply" and device.nominal("value", 0.0) != 0.0:
-                yield [device]
-        elif islands.find(a) == islands.find(b):
-            yield [device, *_path(tree, a, b)]
-        else:
-            islands.join(a, b)
-            tree.setdefault(a, []).append((b, device))
-            tree.setdefault(b, []).append((a, device))
-
-
-def _path(tree: Tree, start: str, goal: str) -> list[Device]:
-    """The devices on the tree's path between two nets."""
-    came: dict[str, tuple[str, Device] | None] = {start: None}
-    waiting = [start]
-    while waiting and goal not in came:
-        net = waiting.pop()
-        for other, device in tree[net]:
-            if other not in came:
-                came[other] = (net, device)
-                waiting.append(other)
-    out: list[Device] = []
-    step = came[goal]
-    while step is not None:
-        out.append(step[1])
-        step = came[step[0]]
-    return out
 
 
 RULE = Rule("graph/source-loop", "error", "structure", "a loop of stiff branches with a supply in it", find)
