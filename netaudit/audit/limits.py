@@ -10,7 +10,7 @@ import numpy as np
 
 from netaudit.devices.base import Array, Check, Device, View
 from netaudit.parts.part import Rating
-from netaudit.parts.policy import Policy, Row
+from netaudit.parts.policy import Policy, Row, diode_class
 
 #: kinds whose P_tot refers to 70 degC and falls to zero at 155 degC unless stated otherwise
 RESISTIVE = frozenset({"resistor", "trimmer", "thermistor", "inductor"})
@@ -139,7 +139,10 @@ def value(check: Check, view: View) -> Array:
 
 
 def owners(device: Device) -> tuple[str, ...]:
-    """Under which names a policy may speak of a device: its part, its kind as polarised, its kind."""
+    """Under which names a policy may speak of a device: its part, its class (polarised, rectifier, Schottky), its kind."""
     part = (device.part.name,) if device.part is not None else ()
-    polarised = (f"{device.kind}-polarised",) if "+" in device.pins and device.kind == "capacitor" else ()
-    return (*part, *polarised, device.kind)
+    if "+" in device.pins and device.kind == "capacitor":
+        return (*part, "capacitor-polarised", device.kind)
+    amperes = device.ratings["I_F"].nominal if "I_F" in device.ratings else None
+    found = diode_class(device.kind, device.words.get("material", "").casefold() == "schottky", amperes)
+    return (*part, *([found] if found else []), device.kind)

@@ -10,7 +10,7 @@ from typing import TYPE_CHECKING, Any
 
 from netaudit.failure import InputError
 from netaudit.finding import Level
-from netaudit.parts.policy import policy_files
+from netaudit.parts.policy_file import policy_files
 from netaudit.project.globs import named_files
 from netaudit.project.project import FILE_NAME, Project
 from netaudit.project.read import find_project, project_at

@@ -1,25 +1,22 @@
 """Derating policies: what share of each rating a part may be used to.
 
 A row is a factor on the rating, a cap (a temperature in degC) or an offset below it (kelvin); the lowest counts.  Rows
-are found by part name, then by kind and symbol, then by symbol alone.
+are found by part name, then by class (``diode-signal``, ``diode-rectifier``, ``diode-schottky``,
+``bridge-rectifier``, ``bridge-schottky``, ``capacitor-polarised``), then by kind,
+then by symbol alone.  A shipped table speaks only of what the published one covers.
 """
 
 from __future__ import annotations
 
 import re
-import tomllib
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
-from pathlib import Path
-from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
 
 from netaudit.failure import InputError
-from netaudit.parts.names import RATINGS
-from netaudit.place import Place
-from netaudit.quantities.read import read_number
+from netaudit.syntax.suggest import closest
 
 
 @dataclass(frozen=True)
@@ -71,6 +68,8 @@ class Policy:
 
 _CAUTIOUS = "cautious: common practice"
 _NONE = Policy("none")
+#: continuous forward current from which on a diode counts as a power rectifier, A (common practice)
+RECTIFIER = 1.0
 
 
 def _cautious() -> Policy:
@@ -93,7 +92,11 @@ _TWO_LEVEL = "Reliability Analysis Center, Part Derating Parameters"
 
 
 def _two_level(severe: bool) -> Policy:
-    """The two-level table: the rows for diodes, references, suppressors and capacitors that could be read."""
+    """The two-level table: its rows for diodes, reference diodes, suppressors and capacitors.
+
+    Its Schottky row is that of microwave diodes, by power instead of current.  LEDs, shunt references (integrated
+    circuits), transistors and resistors are not in the part of the table that could be read: they have no row.
+    """
     column = "severe" if severe else "benign"
     document = f"{_TWO_LEVEL}, {column}"
 
@@ -102,12 +105,13 @@ def _two_level(severe: bool) -> Policy:
 
     cap = Row(cap=95.0 if severe else 115.0, document=document)
     rows: dict[tuple[str, str], Row] = {}
-    for kind in ("diode", "led", "bridge"):
-        rows[(kind, "I_F")] = pick(0.9, 1.0)
-        rows[(kind, "V_R")] = rows[(kind, "V_RRM")] = pick(0.7, 0.8)
-        rows[(kind, "T_j")] = cap
-    for kind in ("zener", "suppressor", "shunt-reference"):
-        rows[(kind, "P_tot")] = rows[(kind, "I_ZM")] = pick(0.9, 1.0)
+    for owner, symbol, _ in _CLASSES:
+        rows[(owner, symbol)] = pick(0.9, 1.0)
+        rows[(owner, "V_R")] = rows[(owner, "V_RRM")] = pick(0.7, 0.8)
+        rows[(owner, "T_j")] = cap
+    rows[("zener", "I_ZM")] = pick(0.9, 1.0)
+    for kind in ("zener", "suppressor"):
+        rows[(kind, "P_tot")] = pick(0.9, 1.0)
         rows[(kind, "T_j")] = cap
     rows[("capacitor", "V_R")] = pick(0.6, 0.7)
     rows[("capacitor-polarised", "V_R")] = pick(0.7, 0.8)
@@ -115,42 +119,60 @@ def _two_level(severe: bool) -> Policy:
 
 
 _QUALITY = "US Navy SD-18, discrete semiconductors, Table 1A"
-#: (I_F, V_R, T_j) of signal diodes by level and environment (protected, normal, severe); None: not allowed
-_SIGNAL: dict[int, tuple[tuple[float, float, float] | None, ...]] = {
+_ENVIRONMENTS = ("protected", "normal", "severe")
+_Cell = tuple[float, float, float]
+#: (share of the first symbol, of V_R, cap of T_j in degC) by level in each environment; level 3 is not allowed in severe
+_SIGNAL: dict[int, tuple[_Cell, ...]] = {
     1: ((1.00, 0.95, 150.0), (1.00, 0.90, 125.0), (1.00, 0.85, 125.0)),
     2: ((0.90, 0.80, 100.0), (0.90, 0.75, 85.0), (0.70, 0.50, 70.0)),
-    3: ((0.75, 0.70, 70.0), (0.70, 0.60, 35.0), None),
+    3: ((0.75, 0.70, 70.0), (0.70, 0.60, 35.0)),
 }
-_ENVIRONMENTS = ("protected", "normal", "severe")
+_RECTIFIER: dict[int, tuple[_Cell, ...]] = {
+    1: ((1.00, 0.95, 150.0), (1.00, 0.90, 125.0), (0.90, 0.85, 125.0)),
+    2: ((0.90, 0.80, 100.0), (0.85, 0.75, 85.0), (0.60, 0.30, 70.0)),
+    3: ((0.60, 0.50, 70.0), (0.50, 0.30, 35.0)),
+}
+_SCHOTTKY: dict[int, tuple[_Cell, ...]] = {
+    1: ((1.00, 0.95, 150.0), (1.00, 0.90, 125.0), (0.90, 0.85, 125.0)),
+    2: ((0.90, 0.80, 100.0), (0.90, 0.80, 85.0), (0.50, 0.25, 70.0)),
+    3: ((0.75, 0.50, 70.0), (0.75, 0.30, 35.0)),
+}
+#: whose row, and the symbol that its first column limits
+_CLASSES = (
+    ("diode-signal", "I_F", _SIGNAL),
+    ("diode-rectifier", "I_F", _RECTIFIER),
+    ("bridge-rectifier", "I_F", _RECTIFIER),
+    ("diode-schottky", "P_tot", _SCHOTTKY),
+    ("bridge-schottky", "P_tot", _SCHOTTKY),
+)
 
 
 def _quality(level: int, environment: str) -> Policy:
-    """Small-signal diodes by quality level and environment."""
-    cell = _SIGNAL[level][_ENVIRONMENTS.index(environment)]
+    """Silicon diodes by quality level and environment: small signal, power rectifier, Schottky (by power)."""
+    column = _ENVIRONMENTS.index(environment)
     name = f"quality-{level}-{environment}"
-    if cell is None:
+    if column >= len(_SIGNAL[level]):
         raise InputError(
             f"policy {name}: this quality level is not allowed there ({_QUALITY})", mend="choose level 1 or 2"
         )
     document = f"{_QUALITY}, level {level}, {environment}"
     rows: dict[tuple[str, str], Row] = {}
-    for kind in ("diode", "led", "bridge"):
-        rows[(kind, "I_F")] = Row(factor=cell[0], document=document)
-        rows[(kind, "V_R")] = rows[(kind, "V_RRM")] = Row(factor=cell[1], document=document)
-        rows[(kind, "T_j")] = Row(cap=cell[2], document=document)
+    for owner, symbol, table in _CLASSES:
+        first, volts, cap = table[level][column]
+        rows[(owner, symbol)] = Row(factor=first, document=document)
+        rows[(owner, "V_R")] = rows[(owner, "V_RRM")] = Row(factor=volts, document=document)
+        rows[(owner, "T_j")] = Row(cap=cap, document=document)
     return Policy(name, rows)
 
 
 def policy_names() -> tuple[str, ...]:
     """The policies that ship."""
-    quality = (
-        f"quality-{n}-{e}" for n, cells in _SIGNAL.items() for e, c in zip(_ENVIRONMENTS, cells, strict=True) if c
-    )
+    quality = (f"quality-{n}-{e}" for n, cells in _SIGNAL.items() for e, _ in zip(_ENVIRONMENTS, cells, strict=False))
     return ("none", "cautious", "two-level-severe", "two-level-benign", *quality)
 
 
 def load_policy(name: str) -> Policy:
-    """A shipped policy by name, or a user's file (TOML: ``[kind]`` or ``[part]`` tables of symbol = "75%")."""
+    """A shipped policy by name, or a user's file (``netaudit.parts.policy_file``)."""
     if name == "none":
         return _NONE
     if name == "cautious":
@@ -161,62 +183,20 @@ def load_policy(name: str) -> Policy:
     if match:
         return _quality(int(match[1]), match[2])
     if name.endswith(".toml"):
-        return _from_file(name)
-    raise InputError(f"there is no policy {name}", mend=f"one of {', '.join(policy_names())}, or a .toml file")
+        from netaudit.parts.policy_file import read_policy
+
+        return read_policy(name)
+    near = closest(name, policy_names())
+    hint = f"did you mean {near}?" if near else f"one of {', '.join(policy_names())}, or a .toml file"
+    raise InputError(f"there is no policy {name}", mend=hint)
 
 
-def policy_files(name: str) -> tuple[str, ...]:
-    """The files that a policy is read from: its own, and those that it is based on."""
-    found: list[str] = []
-    while name.endswith(".toml") and name not in found:
-        found.append(name)
-        try:
-            name = str(tomllib.loads(Path(name).read_text(encoding="utf-8-sig")).get("base", ""))
-        except (OSError, ValueError):
-            break
-    return tuple(found)
-
-
-def _from_file(path: str) -> Policy:
-    try:
-        text = Path(path).read_text(encoding="utf-8-sig")
-        data = tomllib.loads(text)
-    except (OSError, UnicodeDecodeError) as error:
-        raise InputError(f"the policy {path} cannot be read: {error}") from None
-    except tomllib.TOMLDecodeError as error:
-        found = re.search(r"line (\d+)", str(error))
-        raise InputError(f"not TOML: {error}", place=Place(path, int(found[1]) if found else 1)) from None
-    base = load_policy(str(data.pop("base"))) if "base" in data else _NONE
-    rows = dict(base.rows)
-    for owner, table in data.items():
-        entries = table if isinstance(table, dict) else {owner: table}
-        for symbol, entry in entries.items():
-            place = Place(path, _line_of(text, symbol))
-            if symbol not in RATINGS and symbol != "value":
-                raise InputError(
-                    f"policy: unknown rating {symbol}", place=place, mend="use a symbol of the part tables"
-                )
-            rows[(owner if isinstance(table, dict) and owner != "all" else "", symbol)] = _row(entry, path, place)
-    return Policy(Path(path).stem, rows)
-
-
-def _line_of(text: str, word: str) -> int:
-    return next((k for k, line in enumerate(text.splitlines(), start=1) if word in line), 1)
-
-
-def _row(entry: Any, path: str, place: Place) -> Row:
-    """``"75%"``, ``0.75``, ``"95degC"`` (a cap), ``"T_j - 40K"`` (an offset), or a list of them."""
-    row = Row(document=path)
-    for item in entry if isinstance(entry, list) else [entry]:
-        text = str(item).strip()
-        offset = re.fullmatch(r"\w+\s*-\s*(\S+)", text)
-        if offset and not re.match(r"[\d.]", text):
-            row = Row(row.factor, row.cap, read_number(offset[1], "K", place), path)
-        elif text.endswith(("degC", "°C")):
-            row = Row(row.factor, read_number(text, "degC", place), row.offset, path)
-        else:
-            factor = read_number(text, "1", place)
-            if not 0 < factor <= 1:
-                raise InputError(f"a share of {text}", place=place, mend="between 0 and 100 %")
-            row = Row(factor, row.cap, row.offset, path)
-    return row
+def diode_class(kind: str, schottky: bool, amperes: float | None) -> str:
+    """The class under which published tables speak of a diode or bridge: ``-schottky``, ``-rectifier`` (every bridge, a
+    diode of 1 A or more: common practice) or ``-signal`` behind the kind; empty for other kinds."""
+    if kind not in ("diode", "bridge"):
+        return ""
+    if schottky:
+        return f"{kind}-schottky"
+    strong = kind == "bridge" or (amperes is not None and amperes >= RECTIFIER)
+    return f"{kind}-rectifier" if strong else f"{kind}-signal"

@@ -9,7 +9,6 @@ import pytest
 
 from netaudit.failure import InputError
 from netaudit.parts.materials import MATERIALS, material
-from netaudit.parts.policy import load_policy, policy_names
 from netaudit.parts.tables import common_table, read_table
 from netaudit.place import Place
 
@@ -137,43 +136,3 @@ def test_silicon_drifts_by_about_two_millivolts_a_kelvin_near_a_milliampere() ->
 
 def test_materials_are_complete() -> None:
     assert all(m.E_g > 0.5 and m.n >= 1 and m.I_S > 0 for m in MATERIALS.values())
-
-
-def test_policies(tmp_path: Path) -> None:
-    for name in policy_names():
-        assert load_policy(name).name == name
-    cautious = load_policy("cautious")
-    row = cautious.row(("diode",), ("T_j",))
-    assert row is not None
-    assert float(row.limit(np.array(150.0))) == 110.0
-    assert float(row.limit(np.array(125.0))) == 100.0
-    (tmp_path / "own.toml").write_text('base = "cautious"\n[led]\nI_F = "50%"\n[all]\nT_j = ["95degC", "T_j - 40K"]\n')
-    own = load_policy(str(tmp_path / "own.toml"))
-    row = own.row(("led",), ("I_F",))
-    assert row is not None
-    assert row.factor == 0.5
-    row = own.row(("npn",), ("T_j",))
-    assert row is not None
-    assert float(row.limit(np.array(125.0))) == 85.0
-    with pytest.raises(InputError, match="no policy"):
-        load_policy("reckless")
-    with pytest.raises(InputError, match="not allowed"):
-        load_policy("quality-3-severe")
-
-
-# US Navy SD-18, discrete semiconductors, Table 1A, small-signal diodes; Part Derating Parameters, two levels
-@pytest.mark.parametrize(
-    ("policy", "symbol", "rating", "limit"),
-    [
-        ("quality-1-normal", "V_R", 100.0, 90.0),
-        ("quality-2-severe", "I_F", 1.0, 0.7),
-        ("quality-2-normal", "T_j", 150.0, 85.0),
-        ("two-level-severe", "V_R", 100.0, 70.0),
-        ("two-level-benign", "T_j", 150.0, 115.0),
-    ],
-)
-def test_published_derating_rows(policy: str, symbol: str, rating: float, limit: float) -> None:
-    row = load_policy(policy).row(("diode",), (symbol,))
-    assert row is not None
-    assert row.document
-    assert float(row.limit(np.array(rating))) == pytest.approx(limit)
