@@ -8,7 +8,7 @@ each end names the check that limits there.
 from __future__ import annotations
 
 import math
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass, replace
 
 from netaudit.audit.audit import audit
@@ -16,8 +16,9 @@ from netaudit.circuit.circuit import Board, Circuit
 from netaudit.devices.base import Device
 from netaudit.failure import InputError
 from netaudit.finding import rank
-from netaudit.parts.policy import Policy
+from netaudit.parts.policy import Policy, load_policy
 from netaudit.quantities.quantity import Quantity
+from netaudit.workers import IN_PROCESS, Interrupted, Workers
 
 #: how far from the present value is looked, and in how many steps a decade
 _DECADES, _STEPS = 2, 12
@@ -39,8 +40,27 @@ class Sizing:
     preferred: dict[str, tuple[float, ...]]
 
 
-def size(board: Board, device: str, policy: str | Policy = "none", series: tuple[str, ...] = ("E24",)) -> Sizing:
-    """The values of a device for which the board passes.  InputError for a device that has no value to choose."""
+@dataclass(frozen=True)
+class _Trial:
+    board: Board
+    device: str
+    nominal: float
+    policy: Policy
+
+
+def size(
+    board: Board,
+    device: str,
+    policy: str | Policy = "none",
+    series: tuple[str, ...] = ("E24",),
+    workers: Workers = IN_PROCESS,
+) -> Sizing:
+    """The values of a device for which the board passes.
+
+    InputError for a device that has no value to choose; Interrupted where the workers are told to stop: without all of
+    its grid a stretch that passes cannot be told from one that was not looked at.
+    """
+    loaded = load_policy(policy) if isinstance(policy, str) else policy
     found = next((d for c in board.circuits for d in c.devices if d.name == device), None)
     if found is None:
         raise InputError(f"there is no device {device}", mend="check the designator")
@@ -50,13 +70,17 @@ def size(board: Board, device: str, policy: str | Policy = "none", series: tuple
         )
     value = found.values["value"]
 
+    def trials(nominals: Sequence[float]) -> list[_Trial]:
+        return [_Trial(board, device, nominal, loaded) for nominal in nominals]
+
     def verdict(nominal: float) -> str:
-        return first_failure(with_value(board, device, nominal), policy)
+        return next(workers.each(_verdict, trials([nominal]), device))
 
     low, high = value.nominal * 10.0**-_DECADES, value.nominal * 10.0**_DECADES
     count = 2 * _DECADES * _STEPS
     grid = [low * (high / low) ** (k / count) for k in range(count + 1)]
-    passes, reasons = _stretches(grid, verdict)
+    said = list(workers.each(_verdict, trials(grid), f"values of {device}"))
+    passes, reasons = _stretches(grid, said, verdict)
     preferred = {
         name: tuple(v for v in preferred_values(name, low, high) if any(a <= v <= b for a, b in passes))
         for name in series
@@ -64,11 +88,14 @@ def size(board: Board, device: str, policy: str | Policy = "none", series: tuple
     return Sizing(device, value.unit, (low, high), passes, reasons, preferred)
 
 
+def _verdict(trial: _Trial, workers: Workers) -> str:
+    return first_failure(with_value(trial.board, trial.device, trial.nominal), trial.policy, workers)
+
+
 def _stretches(
-    grid: list[float], verdict: Callable[[float], str]
+    grid: list[float], said: list[str], verdict: Callable[[float], str]
 ) -> tuple[tuple[tuple[float, float], ...], tuple[tuple[str, str], ...]]:
     """Passing intervals of the grid with their ends refined, and what limits each end."""
-    said = [verdict(v) for v in grid]
     passes, reasons = [], []
     start: tuple[float, str] | None = (grid[0], "") if not said[0] else None
     for (a, before), (b, after) in zip(
@@ -101,9 +128,12 @@ def _edge(failing: float, passing: float, why: str, verdict: Callable[[float], s
     return passing, why
 
 
-def first_failure(board: Board, policy: str | Policy) -> str:
+def first_failure(board: Board, policy: str | Policy, workers: Workers = IN_PROCESS) -> str:
     """The worst finding of level error as ``rule device``; empty when everything passes."""
-    for finding in audit(board, policy).findings:
+    found = audit(board, policy, workers=workers)
+    if found.partial:
+        raise Interrupted
+    for finding in found.findings:
         if rank(finding.level) >= rank("error"):
             return f"{finding.rule} {finding.device or finding.net or ''}".strip()
     return ""

@@ -115,7 +115,12 @@ def cache_of(options: argparse.Namespace, files: Sequence[Target]) -> Cache | No
 def workers_of(options: argparse.Namespace, files: Sequence[Target]) -> int:
     """How many boards at a time; 0 stands for every processor."""
     project = files[0].project if files else None
-    count: int = stated(options.workers, project, lambda p: p.workers, 1)
+    return count_of(stated(options.workers, project, lambda p: p.workers, 1))
+
+
+def count_of(workers: int | None) -> int:
+    """The number behind ``--workers``, 1 where it is not given.  Raises InputError for one that cannot be meant."""
+    count = 1 if workers is None else workers
     if not 0 <= count <= 256:
         raise InputError(f"--workers {count}", mend="between 0 and 256")
     return count
