@@ -78,7 +78,7 @@ class Sparse:
     def _one(
         self, system: System, num: Numbers, member: int, slope: Array, right: Array, turn: int, shift: Array | None
     ) -> tuple[Array, Array]:
-        one = num.take(np.array([member])) if num.batch else num
+        one = num.single(member)
         jac = self._matrix(system, one, slope, shift)
         factor = self._factor(jac)
         if factor is None:
@@ -93,7 +93,7 @@ class Sparse:
         """J^-1 of several right-hand sides a member: right (batch, k, n), the same shape back."""
         out = np.empty_like(right)
         for member in range(len(right)):
-            one = num.take(np.array([member])) if num.batch else num
+            one = num.single(member)
             factor = self._factor(self._matrix(system, one, slope[member], None))
             if factor is None:
                 out[member] = np.nan
