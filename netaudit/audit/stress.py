@@ -66,7 +66,7 @@ def watched(solver: Solver, policy: Policy) -> list[Watched]:
     out = []
     for d in solver.system.devices:
         checks = KINDS[d.kind].checks(d)
-        out += [Watched(d, c, Limit(d, c, policy, d.name in heated, d.name in on_path)) for c in checks]
+        out += [Watched(d, c, Limit(d, c, policy, d.name in heated, d.name in on_path), c.pin) for c in checks]
         out += [Watched(d, *rest) for rest in pin_checks(d)]
     return out
 
@@ -123,6 +123,8 @@ def findings_of(stress: Stress, device: Device, units: Mapping[str, str]) -> Ite
     where = corner_text(stress.corner, units)
     at = (f" at {where}" if where else "") + (f" with {stress.variant}" if stress.variant else "")
     what = stress.quantity.replace("-", " ") + (f" of {stress.pin}" if stress.pin else "")
+    # one quantity of a transistor has two ratings, each of its own pair of pins
+    what = "collector base voltage" if stress.symbol == "V_CBO" else what
     yield made(
         f"stress/{stress.quantity}", level, device, stress.mode,
         f"{what} reaches {said}{at}, beyond {whose} of {engineering(bound, stress.unit, 4)}: "

@@ -14,6 +14,7 @@ from netaudit.parts.names import PARAMETERS
 from netaudit.parts.part import Part, Rating
 from netaudit.parts.ratings import inline_rating
 from netaudit.parts.tables import PartTable
+from netaudit.parts.values import physical
 from netaudit.place import Place
 from netaudit.quantities.quantity import Quantity
 from netaudit.quantities.read import combine, read_at, read_quantity
@@ -140,6 +141,9 @@ class Builder:
             values.pop(f"{key}.at", None)
             quantity = read_quantity(word.text, unit, word.place, code=unit in _CODED)
         _physical(raw.name, key, quantity, spec, word.place)
+        wrong = physical(PARAMETERS[key], quantity) if key in PARAMETERS else ""
+        if wrong:
+            raise InputError(f"{raw.name}: {key} {wrong}", place=word.place, mend=f"it is the {PARAMETERS[key].text}")
         values[key] = quantity
 
     def _unknown(self, raw: RawDevice, key: str, word: Word) -> InputError:

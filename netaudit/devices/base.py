@@ -175,7 +175,7 @@ class Check:
     ``measure`` returns the stress, positive in the direction that the rating limits (signed: a value below zero means
     the part is stressed the other way and counts as zero).  ``both`` takes its magnitude (both directions count).
     ``required``: without the rating the part counts as not audited.  ``derated``: linear power derating applies
-    (``P_tot`` at ``T_ref`` down to zero at ``T_j`` or ``T_max``).
+    (``P_tot`` at ``T_ref`` down to zero at ``T_j`` or ``T_max``).  ``pin`` tells it from another check of one quantity.
     """
 
     quantity: str
@@ -185,6 +185,7 @@ class Check:
     both: bool = False
     required: bool = False
     derated: bool = False
+    pin: str | None = None
 
 
 @dataclass(frozen=True)

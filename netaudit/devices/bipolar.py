@@ -117,18 +117,19 @@ class Bipolar(Kind):
 
     def checks(self, device: Device) -> tuple[Check, ...]:
         s = self.sign
-        if "V_CEO" not in device.ratings and "V_CBO" in device.ratings:
-            blocking = Check(
-                "collector-emitter-voltage", "V", ("V_CBO",), lambda v: s * (v.v("C") - v.v("B")), required=True
-            )
-        else:
-            blocking = Check(
-                "collector-emitter-voltage", "V", ("V_CEO",), lambda v: s * (v.v("C") - v.v("E")), required=True
-            )
+        both = "V_CEO" in device.ratings and "V_CBO" in device.ratings
+        to_emitter = Check(
+            "collector-emitter-voltage", "V", ("V_CEO",), lambda v: s * (v.v("C") - v.v("E")), required=True
+        )
+        to_base = Check(
+            "collector-emitter-voltage", "V", ("V_CBO",), lambda v: s * (v.v("C") - v.v("B")), required=not both,
+            pin="B" if both else None,
+        )  # fmt: skip
+        blocking = (to_emitter, to_base) if both else (to_base if "V_CBO" in device.ratings else to_emitter,)
         return (
             Check("collector-current", "A", ("I_C",), lambda v: s * v.i("C"), both=True, required=True),
             Check("base-current", "A", ("I_B",), lambda v: s * v.i("B"), both=True),
-            blocking,
+            *blocking,
             Check("emitter-base-voltage", "V", ("V_EBO",), lambda v: s * (v.v("E") - v.v("B"))),
             power(required=True),
             junction_temperature(),
@@ -157,7 +158,6 @@ def _keys() -> Iterator[tuple[str, Key]]:
     yield "V_BE", Key("V", at="A")
     yield "V_CE_sat", Key("V", at="A")
     yield "T_0", Key("degC")
-    yield "V_F", Key("V")
     for name in ("R_B", "R_C", "R_E"):
         yield name, Key("ohm", least=0.0)
     yield "material", Key()

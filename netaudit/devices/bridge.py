@@ -1,4 +1,7 @@
-"""``bridge``: four diodes of the named part, AC1 and AC2 to +, - to AC1 and AC2."""
+"""``bridge``: four diodes of the named part, AC1 and AC2 to +, - to AC1 and AC2.
+
+The keys of a junction may stand on the device line instead of a part: they are those of each diode.  Left out: breakdown.
+"""
 
 from __future__ import annotations
 
@@ -6,9 +9,9 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from netaudit.devices.base import Array, Assembly, Check, Device, Growth, Kind, Values, View
+from netaudit.devices.base import Array, Assembly, Check, Device, Growth, Key, Kind, Values, View
 from netaudit.devices.common import POWER_RATINGS, junction_temperature, power
-from netaudit.devices.diode import JUNCTION_KEYS
+from netaudit.devices.diode import FORWARD_KEYS
 from netaudit.devices.junction import forward, with_junction
 from netaudit.devices.measured import check_measured, measured_growth, stamp_measured
 
@@ -53,5 +56,8 @@ class Bridge(Kind):
 
 
 KIND = Bridge(
-    "bridge", (("AC1", "AC2", "+", "-"),), keys={**JUNCTION_KEYS}, ratings=("I_F", "V_R", "V_RRM", *POWER_RATINGS)
+    "bridge",
+    (("AC1", "AC2", "+", "-"),),
+    keys={**FORWARD_KEYS, "I_R": Key("A", at="V", least=0.0)},
+    ratings=("I_F", "V_R", "V_RRM", *POWER_RATINGS),
 )

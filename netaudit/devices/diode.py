@@ -15,20 +15,24 @@ from netaudit.devices.common import POWER_RATINGS, junction_temperature, power
 from netaudit.devices.junction import breakdown, forward, with_breakdown, with_junction
 from netaudit.devices.measured import check_measured, measured_growth, stamp_measured
 
-JUNCTION_KEYS = {
+#: the forward junction alone
+FORWARD_KEYS = {
     "I_S": Key("A", positive=True),
     "n": Key("1", positive=True),
     "R_S": Key("ohm", least=0.0),
     "T_0": Key("degC"),
     "E_g": Key("eV", positive=True),
     "alpha_VF": Key("V/K", at="A"),
+    "material": Key(),
+}
+JUNCTION_KEYS = {
+    **FORWARD_KEYS,
     "I_R": Key("A", at="V", least=0.0),
     "V_Z": Key("V", positive=True),
     "I_Z": Key("A", positive=True),
     "r_Z": Key("ohm", positive=True),
     "r_ZK": Key("ohm", positive=True),
     "alpha_VZ": Key("1/K"),
-    "material": Key(),
 }
 #: a part that is meant to stay off says so
 USE = Key(words=("clamp",))

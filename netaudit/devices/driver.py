@@ -1,4 +1,7 @@
-"""``driver``: a logic output between its rails V and G: R_high to V, R_low to G, or off; clamp junctions to both."""
+"""``driver``: a logic output between its rails V and G: R_high to V, R_low to G, or off; clamp junctions to both.
+
+V_max limits the voltage between the rails.
+"""
 
 from __future__ import annotations
 
@@ -7,7 +10,7 @@ from dataclasses import dataclass, replace
 import numpy as np
 
 from netaudit.devices.base import Assembly, Check, Device, Growth, Key, Kind, Values, conductance, resistance
-from netaudit.devices.common import POWER_RATINGS, junction_temperature, power
+from netaudit.devices.common import POWER_RATINGS, junction_temperature, power, stated_voltage
 from netaudit.devices.rows import clamp
 
 
@@ -38,6 +41,7 @@ class Driver(Kind):
     def checks(self, device: Device) -> tuple[Check, ...]:
         return (
             Check("current", "A", ("I_max",), lambda view: view.i("OUT"), both=True, required=True),
+            *stated_voltage(device, "V", "G"),
             power(),
             junction_temperature(),
         )
@@ -48,5 +52,5 @@ KIND = Driver(
     (("OUT", "V", "G"),),
     states=("high", "low", "off"),
     keys={"R_high": Key("ohm", least=0.0), "R_low": Key("ohm", least=0.0)},
-    ratings=("I_max", *POWER_RATINGS),
+    ratings=("I_max", "V_max", *POWER_RATINGS),
 )

@@ -2,7 +2,7 @@
 
 The LED's current, times CTR / (beta + 1), flows from the collector into the base of an Ebers-Moll transistor (beta 200,
 I_S 1e-14 A), so that the output saturates as a transistor does.  Left out: CTR's dependence on current and temperature,
-dark current.
+dark current.  The base has no pin: V_CBO limits v_CE, V_EBO limits v_EC, and I_B is taken but compared with nothing.
 """
 
 from __future__ import annotations
@@ -13,7 +13,7 @@ import numpy as np
 
 from netaudit.devices.base import Array, Assembly, Check, Device, Key, Kind, Value, Values, View, conductance
 from netaudit.devices.common import POWER_RATINGS, junction_temperature, power
-from netaudit.devices.diode import JUNCTION_KEYS
+from netaudit.devices.diode import FORWARD_KEYS
 from netaudit.devices.families import EXPONENTIAL
 from netaudit.devices.junction import LEAK, log_saturation, thermal_voltage, with_junction
 
@@ -55,10 +55,18 @@ class Optocoupler(Kind):
             Check("forward-current", "A", ("I_F",), lambda v: v.i("A"), required=True),
             Check("reverse-voltage", "V", ("V_R", "V_RRM"), lambda v: v.v("K") - v.v("A"), required=True),
             Check("collector-current", "A", ("I_C",), lambda v: v.i("C"), both=True),
-            Check("collector-emitter-voltage", "V", ("V_CEO",), lambda v: v.v("C") - v.v("E")),
+            Check("collector-emitter-voltage", "V", ("V_CEO", "V_CBO"), lambda v: v.v("C") - v.v("E")),
+            *self._backwards(device),
             power(),
             junction_temperature(),
         )
+
+    @staticmethod
+    def _backwards(device: Device) -> tuple[Check, ...]:
+        """The emitter above the collector, where the part states what it stands."""
+        if "V_EBO" not in device.ratings:
+            return ()
+        return (Check("emitter-base-voltage", "V", ("V_EBO",), lambda v: v.v("E") - v.v("C")),)
 
     def requirement(self, view: View, device: Device) -> Array:
         return view.i("A")
@@ -67,6 +75,6 @@ class Optocoupler(Kind):
 KIND = Optocoupler(
     "optocoupler",
     (("A", "K", "C", "E"),),
-    keys={**JUNCTION_KEYS, "CTR": Key("1", positive=True, at="A")},
-    ratings=("I_F", "V_R", "V_RRM", "I_C", "V_CEO", "V_EBO", *POWER_RATINGS),
+    keys={**FORWARD_KEYS, "CTR": Key("1", positive=True, at="A")},
+    ratings=("I_F", "V_R", "V_RRM", "I_C", "I_B", "V_CEO", "V_CBO", "V_EBO", *POWER_RATINGS),
 )

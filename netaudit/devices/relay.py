@@ -1,7 +1,7 @@
 """``relay``: a coil of resistance R between C1 and C2; COM to NO when on, to NC when off.
 
 The contact state is given; whether the coil's voltage fits it is judged afterwards: on needs V_on (default 1 V) at
-least, off V_off (default 1 V) at most.
+least, off V_off (default 1 V) at most.  V_max limits the voltage across the open contact.
 """
 
 from __future__ import annotations
@@ -23,7 +23,7 @@ from netaudit.devices.base import (
     conductance,
     resistance,
 )
-from netaudit.devices.common import POSITIVE_OHM
+from netaudit.devices.common import POSITIVE_OHM, stated_voltage
 
 _THRESHOLD = 1.0
 
@@ -47,7 +47,8 @@ class Relay(Kind):
         return "increasing"
 
     def checks(self, device: Device) -> tuple[Check, ...]:
-        return (Check("current", "A", ("I_max",), lambda view: view.i("COM"), both=True, required=True),)
+        carried = Check("current", "A", ("I_max",), lambda view: view.i("COM"), both=True, required=True)
+        return (carried, *stated_voltage(device, "COM", "NC" if device.words["state"] == "on" else "NO"))
 
 
 def coil_misfit(view: View, device: Device) -> Array:
@@ -68,5 +69,5 @@ KIND = Relay(
         "V_on": Key("V", positive=True),
         "V_off": Key("V", positive=True),
     },
-    ratings=("I_max",),
+    ratings=("I_max", "V_max"),
 )

@@ -1,7 +1,7 @@
 """Collector-emitter voltage against V_CEO.
 
-v_CE (pnp: v_EC) against V_CEO, which holds for an open base and so for any drive; where only V_CBO is stated, the
-collector-base voltage against that.
+v_CE (pnp: v_EC) against V_CEO, which holds for an open base and so for any drive; where V_CBO is stated, the
+collector-base voltage against that as well (an optocoupler, whose base has no pin: v_CE against the lower of the two).
 
 Mend: a transistor for more voltage, or a clamp at the collector.
 
