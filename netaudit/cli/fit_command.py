@@ -22,7 +22,12 @@ def add(commands: Any) -> None:
     )
     command.add_argument("file", metavar="CURVE.csv", help="columns voltage and current, units in the heading")
     command.add_argument("--name", required=True, help="the part's name in the table")
-    command.add_argument("--kind", default="diode", help="diode, led, zener, curve (default: diode)")
+    command.add_argument(
+        "--kind",
+        default="diode",
+        choices=("diode", "led", "zener", "suppressor", "bridge", "curve"),
+        help="what the part is (default: diode); a curve keeps its points",
+    )
     command.add_argument(
         "-o", "--output", metavar="PARTS.toml", help="append the row to this table instead of printing it"
     )
@@ -39,7 +44,7 @@ def add(commands: Any) -> None:
     command.add_argument("--temperature", default="25degC", metavar="T", help="where the heading states none")
     command.add_argument("--volts", default="1mV", metavar="1mV", help="the meter's uncertainty in volts")
     command.add_argument(
-        "--share", default="1%", metavar="1%%", help="the meter's uncertainty as a share of the current"
+        "--share", default="1%", metavar="1%", help="the meter's uncertainty as a share of the current"
     )
     command.add_argument("--noise", default="0A", metavar="10nA", help="the meter's offset noise")
     command.add_argument("--limit", metavar="100mA", help="the instrument's current limit (looked for when not given)")
@@ -69,10 +74,12 @@ def run(options: argparse.Namespace) -> int:
         found = fit_curves(curves, meter, read_number(options.temperature, "degC", place))
     except InputError as error:
         raise InputError(
-            error.what, place=error.place or Place(options.file, curves[0].lines[0]), mend=error.mend
+            error.what,
+            place=Place(options.file, error.place.line if error.place else curves[0].lines[0]),
+            mend=error.mend,
         ) from None
     row = part_row(options.name, options.kind, found, options.file)
-    sys.stdout.write(fit_text(options.name, found, curves) + "\n")
+    sys.stdout.write(fit_text(options.name, options.kind, found, curves) + "\n")
     if options.output:
         _append(options.output, options.name, row)
         sys.stdout.write(f"row {options.name} added to {options.output}\n")

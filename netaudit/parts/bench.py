@@ -15,13 +15,21 @@ import numpy as np
 
 from netaudit.failure import InputError
 from netaudit.parts.measured import Array, Curve
+from netaudit.parts.reverse import Breakdown, reverse_branch
+from netaudit.place import Place
 
 BOLTZMANN, CHARGE = 1.380649e-23, 1.602176634e-19
 #: a fit whose largest deviation is beyond these is no exponential: the curve itself is kept
 LARGEST_ERROR, LARGEST_SHARE = 0.05, 0.05
 _LEAST_POINTS = 4
+#: of longer curves every so-manieth point is taken
+_MOST = 20_000
+#: within this share of a current limit a point is at it
+_AT_LIMIT = 2e-3
 #: volts around the origin at which a junction carries next to nothing
 _NEAR = 0.05
+#: volts or amperes beyond which nothing was measured
+_LARGEST = 1e9
 #: a forward branch does not reach further than this, V
 _LONGEST = 5.0
 
@@ -52,7 +60,7 @@ class Fit:
     temperature: float = 25.0
     errors: dict[str, float] = field(default_factory=dict)
     leakage: tuple[float, float] | None = None
-    breakdown: tuple[float, float, float] | None = None
+    breakdown: Breakdown | None = None
     E_g: float | None = None
     alpha_VF: tuple[float, float] | None = None
     worst: float = math.nan
@@ -67,7 +75,9 @@ def fit_curves(curves: Sequence[Curve], meter: Meter | None = None, temperature:
     Raises InputError for a curve that cannot be one: fewer than two points, two currents at one voltage.
     """
     meter = meter or Meter()
-    fits = [_one(c, meter, temperature) for c in curves]
+    # data that is no junction's runs out of numbers somewhere and ends as no exponential
+    with np.errstate(divide="ignore", invalid="ignore", over="ignore", under="ignore"):
+        fits = [_one(c, meter, temperature) for c in curves]
     main = min(fits, key=lambda f: abs(f.temperature - 25.0))
     hot = [f for f in fits if f.exponential]
     if not main.exponential or len(hot) < 2 or np.ptp([f.temperature for f in hot]) < 5.0:
@@ -79,28 +89,32 @@ def _one(curve: Curve, meter: Meter, temperature: float) -> Fit:
     t = curve.temperature if curve.temperature is not None else temperature
     order = np.argsort(curve.v, kind="stable")
     v, i = curve.v[order], curve.i[order]
+    step = -(-len(v) // _MOST)
+    v, i = v[::step], i[::step]
     v, i, left_out = _usable(v, i, meter)
+    if step > 1:
+        left_out = (*left_out, f"{len(curve.v) - len(order[::step])} of {len(curve.v)} points: each {step}th was taken")
     if _turned(v, i, meter, t):
         v, i = -v[::-1], -i[::-1]
         left_out = (*left_out, "no points: the leads were reversed, voltage and current are taken with the other sign")
-    if len(v) < 2:
-        raise InputError("fewer than two usable points are left", mend="check the limits of the instrument")
+    if len(v) < 2 or v[0] == v[-1]:
+        what = "fewer than two usable points are left" if len(v) < 2 else f"every point lies at {v[0]:.4g} V"
+        raise InputError(what, mend="check the limits of the instrument and the order of the columns")
     floor = _noise(v, i, meter)
     forward = (v > 0) & (i > max(3 * floor, 0.0)) & (i > 0)
     if floor > 0 and (dropped := int(((v > 0) & ~forward).sum())):
         left_out = (*left_out, f"{dropped} forward points below the offset noise of {floor:.3g} A")
-    points = tuple(zip(v.tolist(), i.tolist(), strict=True))
     if forward.sum() < _LEAST_POINTS:
-        return Fit(False, temperature=t, points=_single(points), left_out=left_out)
+        return Fit(False, temperature=t, points=_single(v, i, curve), left_out=left_out)
     fit = _forward(v[forward], i[forward], meter, t)
     if fit is None or not _close(fit, v[forward], i[forward]):
         return Fit(
-            False, temperature=t, points=_single(points), left_out=left_out, worst=fit.worst if fit else math.nan
+            False, temperature=t, points=_single(v, i, curve), left_out=left_out, worst=fit.worst if fit else math.nan
         )
-    leakage, breakdown = _reverse(v, i, fit)
+    leakage, breakdown = reverse_branch(v, i, meter.volts, meter.share, max(2 * fit.I_S, 3 * floor))
     return Fit(
         True, fit.I_S, fit.n, fit.R_S, t, fit.errors, leakage, breakdown, None, None, fit.worst, fit.worst_at,
-        _single(points), left_out,
+        _single(v, i, curve), left_out,
     )  # fmt: skip
 
 
@@ -113,40 +127,61 @@ def _turned(v: Array, i: Array, meter: Meter, t: float) -> bool:
     return fit is not None and fit.n < 5.0 and _close(fit, -v[back][::-1], -i[back][::-1])
 
 
-def _single(points: Sequence[tuple[float, float]]) -> tuple[tuple[float, float], ...]:
+def _single(v: Array, i: Array, curve: Curve) -> tuple[tuple[float, float], ...]:
     """Rising voltages, readings at one voltage averaged when they agree; two different currents there are an error."""
-    by_voltage: dict[float, list[float]] = {}
-    for v, i in points:
-        by_voltage.setdefault(v, []).append(i)
-    for v, readings in by_voltage.items():
-        spread = max(readings) - min(readings)
-        if spread > 0.2 * max(abs(r) for r in readings) + 1e-9:
-            raise InputError(f"two currents at one voltage: {readings[0]:.4g} A and {readings[-1]:.4g} A at {v:.4g} V")
-    return tuple((v, float(np.mean(r))) for v, r in sorted(by_voltage.items()))
+    order = np.argsort(v, kind="stable")
+    v, i = v[order], i[order]
+    volts, first, count = np.unique(v, return_index=True, return_counts=True)
+    low, high = np.minimum.reduceat(i, first), np.maximum.reduceat(i, first)
+    torn = high - low > 0.2 * np.maximum(np.abs(low), np.abs(high)) + 1e-9
+    if torn.any():
+        k = int(np.argmax(torn))
+        line = curve.lines[int(np.flatnonzero(np.abs(curve.v) == abs(volts[k]))[-1])]
+        raise InputError(
+            f"two currents at one voltage: {low[k]:.4g} A and {high[k]:.4g} A at {volts[k]:.4g} V",
+            place=Place("", line),
+            mend="keep one of them",
+        )
+    return tuple(zip(volts.tolist(), (np.add.reduceat(i, first) / count).tolist(), strict=True))
 
 
 def _usable(v: Array, i: Array, meter: Meter) -> tuple[Array, Array, tuple[str, ...]]:
-    """The points that are not at the instrument's current limit."""
-    top = meter.limit
-    if top is None:
-        largest = float(np.max(np.abs(i)))
-        near = np.abs(i) > largest * (1 - 2e-3)
-        # a plateau: three points or more at one current while the voltage goes on
-        flat = (
-            near.sum() >= 3
-            and np.ptp(v[near]) > 0.02
-            and np.ptp(v[near]) > 20 * np.ptp(np.abs(i[near])) / largest * 0.026
-        )
-        top = largest if flat else None
-    if top is None:
-        return v, i, ()
-    at_limit = np.abs(i) >= top * (1 - 2e-3)
-    if not at_limit.any():
-        return v, i, ()
-    said = (
-        f"{int(at_limit.sum())} points at the current limit of {top:.4g} A (from {float(v[at_limit].min()):.4g} V on)"
-    )
-    return v[~at_limit], i[~at_limit], (said,)
+    """The points that are not at the instrument's current limit: as stated, else where either branch ends in a plateau."""
+    near = max(_AT_LIMIT, 4.0 * meter.share)
+    at_limit = np.zeros(len(v), dtype=bool)
+    said = []
+    for sign in (1.0, -1.0):
+        top = meter.limit if meter.limit is not None else _plateau(sign * v, sign * i, near, sign < 0)
+        if top is None:
+            continue
+        here = sign * i >= top * (1.0 - (near if meter.limit is None else _AT_LIMIT))
+        if here.any():
+            begin = float(v[here][np.argmin(np.abs(v[here]))])
+            said.append(f"{int(here.sum())} points at the current limit of {top:.4g} A (from {begin:.4g} V on)")
+            at_limit |= here
+    return v[~at_limit], i[~at_limit], tuple(said)
+
+
+def _plateau(v: Array, i: Array, near: float, reverse: bool) -> float | None:
+    """The current at which the branch of positive currents ends in a plateau, None when it rises to its end.
+
+    Three points or more lie within ``near`` of the largest current and span four times the voltage that the slope before
+    them would.  A reverse branch must have risen a thousandfold: a saturated leakage is flat as well.
+    """
+    branch = (v > 0) & (i > 0)
+    order = np.argsort(v[branch], kind="stable")
+    u, j = v[branch][order], i[branch][order]
+    if len(u) < 4 or (reverse and j.max() < 1e3 * j.min()):
+        return None
+    flat = j >= np.median(j[j >= j.max() * (1.0 - near)]) * (1.0 - near)
+    first = int(np.argmax(flat))
+    if flat.sum() < 3 or first == 0:
+        return None
+    begin = min(int(np.searchsorted(j[:first], 0.5 * j[first])), first - 1)
+    slope = (u[first] - u[begin]) / max(j[first] - j[begin], 1e-300)
+    level = float(np.median(j[flat]))
+    span = float(u[-1] - u[first])
+    return level if span > max(0.02, 4.0 * slope * near * level) else None
 
 
 def _noise(v: Array, i: Array, meter: Meter) -> float:
@@ -169,6 +204,8 @@ def _thermal(t: float) -> float:
 def _forward(v: Array, i: Array, meter: Meter, t: float) -> Fit | None:
     """Gauss-Newton on v = n V_T ln(1 + i/I_S) + R_S i with R_S >= 0; standard errors from the normal matrix."""
     vt = _thermal(t)
+    if not np.isfinite(v).all() or float(np.max(np.abs(v))) > _LARGEST or float(np.max(np.abs(i))) > _LARGEST:
+        return None
     a, b, r = _start(v, i)
     with_r = r > 0
     theta = np.array([a, b, max(r, 0.0)])
@@ -178,6 +215,8 @@ def _forward(v: Array, i: Array, meter: Meter, t: float) -> Fit | None:
         weight = 1.0 / np.hypot(meter.volts, slope * (meter.share * i + meter.amperes))
         free = [0, 1, 2] if with_r else [0, 1]
         weighted = jac[:, free] * weight[:, None]
+        if not np.isfinite(weighted).all():
+            return None
         step, *_ = np.linalg.lstsq(weighted, (v - model) * weight, rcond=None)
         theta[free] += np.clip(step, -0.5 * np.abs(theta[free]) - 1e-3, 0.5 * np.abs(theta[free]) + 1e-3)
         theta[0] = max(theta[0], 1e-4)
@@ -227,26 +266,6 @@ def _close(fit: Fit, v: Array, i: Array) -> bool:
     if not (0.5 < fit.n < 400 and fit.I_S > 0):
         return False
     return fit.worst <= LARGEST_ERROR or fit.worst <= LARGEST_SHARE * float(np.max(v))
-
-
-def _reverse(v: Array, i: Array, fit: Fit) -> tuple[tuple[float, float] | None, tuple[float, float, float] | None]:
-    """Leakage (amperes at reverse volts) and breakdown (V_Z, I_Z, r_Z) where the reverse branch shows them."""
-    back = (v < 0) & (i < 0)
-    if back.sum() < 2:
-        return None, None
-    u, j = -v[back][::-1], -i[back][::-1]
-    breakdown = None
-    steep = np.flatnonzero((np.diff(np.log(j)) > 4 * np.diff(np.log(u))) & (j[1:] > 30 * np.median(j)))
-    if len(steep) and j[-1] > 100 * j[0]:
-        first = int(steep[0]) + 1
-        if len(u) - first >= 2:
-            slope, *_ = np.linalg.lstsq(np.stack([j[first:], np.ones(len(j) - first)], axis=-1), u[first:], rcond=None)
-            middle = len(u) - 1 if len(u) - first < 3 else (first + len(u)) // 2
-            breakdown = (float(u[middle]), float(j[middle]), max(float(slope[0]), 1e-3))
-            u, j = u[:first], j[:first]
-    if not len(u) or j[-1] <= 2 * fit.I_S:
-        return None, breakdown
-    return (float(j[-1]), float(u[-1])), breakdown
 
 
 def _with_temperatures(main: Fit, fits: Sequence[Fit]) -> Fit:

@@ -7,6 +7,8 @@ over R).  Comments begin with #, % or //.
 
 from __future__ import annotations
 
+import csv
+import io
 import math
 import re
 from collections.abc import Sequence
@@ -19,9 +21,14 @@ from netaudit.failure import InputError
 from netaudit.place import Place
 
 Array = NDArray[np.float64]
-_NUMBER = re.compile(r"^[+-]?(\d+\.?\d*|\.\d+)([eE][+-]?\d+)?$")
+_NUMBER = re.compile(r"^[+-]?([0-9]+\.?[0-9]*|\.[0-9]+)([eE][+-]?[0-9]+)?$")
 _PREFIX = {"f": 1e-15, "p": 1e-12, "n": 1e-9, "u": 1e-6, "µ": 1e-6, "μ": 1e-6, "m": 1e-3, "": 1.0, "k": 1e3}
 _UNIT = re.compile(r"(?:^|[\s\[(/_,])(?P<prefix>[fpnuµμmk]?)(?P<unit>[VA])(?:$|[\s\])_,@])")
+#: characters from which on a file of numbers is read at once
+_LONG = 20_000
+_WORDS = (("milli", "m"), ("micro", "u"), ("nano", "n"), ("pico", "p"), ("kilo", "k"))
+#: a row of units alone, below the row of names
+_ALONE = re.compile(r"^[\[(]?[fpnuµμmk]?[VvAa][\])]?$")
 _TEMPERATURE = re.compile(r"(?P<t>[+-]?\d+(?:[.,]\d+)?)\s*(?:deg\s*C|°\s*C|℃|C\b)")
 
 
@@ -56,18 +63,15 @@ class _Line:
 def read_curves(data: bytes, file: str, layout: Layout | None = None) -> tuple[Curve, ...]:
     """The curves of a file.  Raises InputError with a line for text in a number, fewer than two points, no columns."""
     layout = layout or Layout()
-    try:
-        text = data.decode("utf-8-sig")
-    except UnicodeDecodeError:
-        text = data.decode("latin-1")
+    text = _decoded(data)
     if "\0" in text:
         raise InputError("this is not a text file", place=Place(file, 1), mend="export the curve as CSV")
-    lines = _split(text)
+    quick = _bulk(text)
+    lines = quick[0] if quick is not None else _split(text)
     if not lines:
         raise InputError("there are no points in the file", place=Place(file, 1), mend="two columns: voltage, current")
-    heading = None if _numeric(lines[0].cells) else lines[0]
-    rows = lines[1:] if heading is not None else lines
-    table, numbers = _numbers(rows, file)
+    heading, rows = _headed(lines)
+    table, numbers = _numbers(rows, file) if quick is None else quick[1:]
     columns = _columns(heading, table.shape[1], layout, file)
     curves = _curves(table, numbers, columns, layout)
     for curve in curves:
@@ -76,6 +80,64 @@ def read_curves(data: bytes, file: str, layout: Layout | None = None) -> tuple[C
                 f"a curve of {len(curve.v)} point(s)", place=Place(file, lines[0].number), mend="two at least"
             )
     return curves
+
+
+def _bulk(text: str) -> tuple[list[_Line], Array, list[int]] | None:
+    """Heading and first row, numbers and their lines of a long file of plain numbers; None for any other file."""
+    if len(text) < _LONG or text.count("\n") < 1000:
+        return None
+    top = text[:_LONG].rpartition("\n")[0]
+    lines = _split(top)
+    first = next((k for k, line in enumerate(lines) if _numeric(line.cells)), len(lines))
+    if first == len(lines):
+        return None
+    number = lines[first].number
+    body = text.split("\n", number - 1)[-1]
+    separator = _separator([line for line in top.split("\n")[number:] if line.strip()])
+    if re.search(r"[#%/\"nN]", body):
+        return None
+    if separator != ",":
+        body = body.replace(",", ".")
+    try:
+        table = np.loadtxt(io.StringIO(body), delimiter=None if separator == " " else separator, comments=None, ndmin=2)
+    except ValueError:
+        return None
+    if not np.isfinite(table).all():
+        return None
+    return lines[: first + 1], table, list(range(number, number + len(table)))
+
+
+def _decoded(data: bytes) -> str:
+    if data.startswith((b"\xff\xfe", b"\xfe\xff")):
+        return data.decode("utf-16", errors="replace")
+    try:
+        return data.decode("utf-8-sig")
+    except UnicodeDecodeError:
+        return data.decode("latin-1")
+
+
+def _headed(lines: list[_Line]) -> tuple[_Line | None, list[_Line]]:
+    """The heading and the rows below it: the last line before the numbers that names a voltage and something beside it
+    (instruments write remarks above it), else the first; a row of units below the names belongs to them."""
+    first = next((k for k, line in enumerate(lines[:200]) if _numeric(line.cells)), len(lines))
+    if first == 0:
+        return None, lines
+    at = next((k for k in reversed(range(min(first, len(lines), 200))) if _names(lines[k].cells)), 0)
+    heading, rows = lines[at], lines[at + 1 :]
+    if rows and any(rows[0].cells) and all(_ALONE.match(c) for c in rows[0].cells if c):
+        units = [*rows[0].cells, *[""] * len(heading.cells)]
+        cells = [
+            f"{name} [{unit.strip('[]()')}]" if unit else name for name, unit in zip(heading.cells, units, strict=False)
+        ]
+        return _Line(cells, heading.number), rows[1:]
+    return heading, rows
+
+
+def _names(cells: Sequence[str]) -> bool:
+    """Whether a row names two columns at least; units alone are no names."""
+    if any(re.match(r"[+-]?[.0-9]", c) for c in cells) or all(_ALONE.match(c) for c in cells):
+        return False
+    return sum(_column(c, Layout()) is not None for c in cells) >= 2
 
 
 def _split(text: str) -> list[_Line]:
@@ -88,7 +150,7 @@ def _split(text: str) -> list[_Line]:
     separator = _separator([body for body, _ in rows])
     out = []
     for body, number in rows:
-        cells = [c.strip() for c in (re.split(r"\s+", body) if separator == " " else body.split(separator))]
+        cells = [c.strip() for c in _cells(body, separator)]
         while cells and not cells[-1]:
             cells.pop()
         if separator != ",":
@@ -97,9 +159,19 @@ def _split(text: str) -> list[_Line]:
     return out
 
 
+def _cells(body: str, separator: str) -> list[str]:
+    if separator == " ":
+        return re.split(r"\s+", body)
+    if '"' not in body:
+        return body.split(separator)
+    cells = [c.strip() for c in next(csv.reader([body], delimiter=separator))]
+    # a quoted cell may hold a decimal comma beside separators that are commas
+    return [re.sub(r"^([+-]?[0-9]+),([0-9]+(?:[eE][+-]?[0-9]+)?)$", r"\1.\2", c) for c in cells]
+
+
 def _separator(rows: Sequence[str]) -> str:
     sample = rows[-min(len(rows), 20) :]
-    for candidate in (";", "\t"):
+    for candidate in (";", "\t", "|"):
         if sample and all(candidate in row for row in sample):
             return candidate
     # blanks between numbers with decimal commas, or plain commas
@@ -127,9 +199,13 @@ def _numbers(rows: Sequence[_Line], file: str) -> tuple[Array, list[int]]:
                 continue
             if not _NUMBER.match(cell):
                 raise InputError(
-                    f"{cell[:40]!r} is not a number", place=Place(file, row.number), mend="one number a cell"
+                    f"{cell[:40]!r} is not a number",
+                    place=Place(file, row.number),
+                    mend="one number a cell, its unit in the heading",
                 )
             table[k, c] = float(cell)
+            if math.isinf(table[k, c]):
+                raise InputError(f"{cell[:40]} is too large", place=Place(file, row.number), mend="check the exponent")
     return table, [r.number for r in rows]
 
 
@@ -145,7 +221,8 @@ def _columns(heading: _Line | None, width: int, layout: Layout, file: str) -> li
     cells = heading.cells if heading is not None else []
     cells = [*cells, *[""] * (width - len(cells))]
     found = [_column(cell, layout) for cell in cells]
-    if not any(c is not None and c.role != "voltage" for c in found):
+    named = sum(c is not None for c in found)
+    if not any(c is not None and c.role != "voltage" for c in found) and (named < 2 or layout.series is not None):
         roles = ["supply", "voltage"] if layout.series is not None else ["voltage"]
         if layout.current_first and layout.series is None:
             roles = ["current", "voltage"]
@@ -189,6 +266,9 @@ def _scale(cell: str, role: str, layout: Layout) -> float:
     letter = "A" if role == "current" else "V"
     # "V (mV)": the symbol of the quantity may look like a unit, so the last one counts
     stated = [m["prefix"] for m in _UNIT.finditer(cell.replace("(", " (")) if m["unit"] == letter]
+    # "milliamps", and "(ua)" in brackets whatever the case
+    stated += [prefix for word, prefix in _WORDS if re.search(rf"{word}\s*(?:amp|volt)", cell, re.IGNORECASE)]
+    stated += re.findall(rf"[\[(/]\s*([fpnuµμmk]){letter.lower()}\s*[\])]?$", cell)
     if stated:
         return _PREFIX[stated[-1]]
     unit = layout.current_unit if role == "current" else layout.voltage_unit

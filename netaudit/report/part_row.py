@@ -11,14 +11,19 @@ from netaudit.parts.measured import Curve
 from netaudit.quantities.write import engineering, write_number
 
 
+def kept(kind: str, fit: Fit) -> bool:
+    """Whether the row keeps the curve itself: no exponential fits, or the kind's model is not what was found."""
+    return not fit.exponential or kind == "curve" or (kind in ("zener", "suppressor") and fit.breakdown is None)
+
+
 def part_row(name: str, kind: str, fit: Fit, source: str) -> str:
     """The row; a name with other characters than a bare TOML key allows is quoted."""
     key = name if name and all(c.isalnum() or c in "-_" for c in name) else f'"{_escaped(name)}"'
     lines = [f"[{key}]"]
-    if not fit.exponential:
+    if kept(kind, fit):
         points = ",\n".join(f'  "{write_number(v, "V")} @ {write_number(i, "A")}"' for v, i in fit.points)
         lines += [
-            f'kind = "{kind if kind in ("led", "diode", "zener", "suppressor") else "curve"}"',
+            f'kind = "{kind}"',
             f"points = [\n{points},\n]",
         ]
     else:
@@ -29,12 +34,8 @@ def part_row(name: str, kind: str, fit: Fit, source: str) -> str:
         if fit.leakage is not None:
             lines.append(f'I_R = "{write_number(fit.leakage[0], "A")} @ {write_number(fit.leakage[1], "V")}"')
         if fit.breakdown is not None:
-            v_z, i_z, r_z = fit.breakdown
-            lines += [
-                f'V_Z = "{write_number(v_z, "V")}"',
-                f'I_Z = "{write_number(i_z, "A")}"',
-                f'r_Z = "{write_number(r_z, "ohm")}"',
-            ]
+            for symbol, unit in (("V_Z", "V"), ("I_Z", "A"), ("r_Z", "ohm"), ("r_ZK", "ohm"), ("I_ZK", "A")):
+                lines.append(f'{symbol} = "{write_number(getattr(fit.breakdown, symbol), unit)}"')
         if fit.alpha_VF is not None:
             lines.append(f'alpha_VF = "{fit.alpha_VF[0] * 1e3:.4g}mV/K @ {write_number(fit.alpha_VF[1], "A")}"')
     lines.append(f'source = "measured, {_escaped(source)}"')
@@ -45,18 +46,29 @@ def _escaped(text: str) -> str:
     return "".join(c if c.isprintable() and c not in '"\\' else f"\\u{ord(c):04x}" for c in text)
 
 
-def fit_text(name: str, fit: Fit, curves: Sequence[Curve]) -> str:
+def fit_text(name: str, kind: str, fit: Fit, curves: Sequence[Curve]) -> str:
     """What the fit found, as comments before the row."""
     count = sum(len(c.v) for c in curves)
     lines = [f"# {name}: {count} points at {', '.join(_degrees(c, fit) for c in curves)}"]
     lines += [f"# left out: {said}" for said in fit.left_out]
-    if not fit.exponential:
+    if kept(kind, fit):
+        if fit.exponential:
+            why = "as its kind asks" if kind == "curve" else f"it shows no breakdown that a {kind} could be modelled by"
+            lines.append(f"# the curve itself is kept: {why}")
+            return "\n".join(lines)
         worst = "" if np.isnan(fit.worst) else f" (the best one misses by {engineering(fit.worst, 'V')})"
         lines.append(f"# no exponential fits{worst}: the curve itself is kept")
         return "\n".join(lines)
     for symbol, value, unit in (("I_S", fit.I_S, "A"), ("n", fit.n, "1"), ("R_S", fit.R_S, "ohm")):
         error = fit.errors.get(symbol, 0.0)
         lines.append(f"# {symbol:<4} {engineering(value, unit, 4)}  standard error {engineering(error, unit, 2)}")
+    if fit.leakage is not None:
+        lines.append(f"# I_R  {engineering(fit.leakage[0], 'A', 3)} at {engineering(fit.leakage[1], 'V', 3)}")
+    if fit.breakdown is not None:
+        b = fit.breakdown
+        lines.append(
+            f"# V_Z  {engineering(b.V_Z, 'V', 4)} at {engineering(b.I_Z, 'A', 3)}, slope {engineering(b.r_Z, 'ohm', 3)}"
+        )
     if fit.E_g is not None and fit.alpha_VF is not None:
         lines.append(
             f"# E_g  {fit.E_g:.3f} eV, drift {fit.alpha_VF[0] * 1e3:.3g} mV/K at {engineering(fit.alpha_VF[1], 'A')}"
