@@ -102,7 +102,9 @@ def _lacking(board: Solved, device: Device) -> Array:
 
 def _drop_out(extreme: Extreme, nominal: Solved, device: Device, circuit: Circuit) -> Iterable[Finding]:
     given, needed = float(_input(extreme.board, device)), float(_needed(extreme.board, device))
-    if given >= needed * (1 - _EXACT) or float(_input(nominal, device)) < POWERED:
+    # one without power is off, but an input that is left open has none in any mode
+    off = float(_input(nominal, device)) < POWERED and "IN" not in device.open_pins
+    if given >= needed * (1 - _EXACT) or off:
         return
     yield made(
         "point/drop-out", "error", device, circuit.mode,

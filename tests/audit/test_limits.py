@@ -114,3 +114,11 @@ def test_pin_limits_of_an_unmodelled_part(tmp_path: Path) -> None:
     assert found["IO"] == (5.0, 3.6, pytest.approx(5 / 3.6))
     assert found["LOW"] == (-1.0, -0.3, pytest.approx(1 / 0.3))
     assert audit.coverage.covered == 1
+
+
+def test_a_regulator_whose_input_is_left_open_is_out_of_headroom() -> None:
+    text = "PS1 supply 12V +:V -:GND\n{}\nU1 regulator 5V V_drop=1V V_I=20V I_O=1A IN:{} OUT:O GND:GND\nR1 resistor 1k 1:O 2:GND\n"
+    found = one(audited(text.format("R2 resistor 1k 1:V 2:GND", "nc")), "point/drop-out")
+    assert (found.level, found.device, found.limit) == ("error", "U1", 6.0)
+    unpowered = text.replace("12V", "0V").format("R2 resistor 1k 1:V 2:GND", "V")
+    assert not [f for f in audited(unpowered).findings if f.rule == "point/drop-out"]

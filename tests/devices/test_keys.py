@@ -30,7 +30,9 @@ def load(kind: str, key: str, value: str) -> None:
     base = EXAMPLES[kind][0] if kind in EXAMPLES else "+:A -:REF"
     words = [w for w in base.split(" ") if not w.startswith(f"{key}=")]
     extra = NEEDED.get(key, "")
-    if extra and (extra.split("=")[0] not in KINDS[kind].keys or any(w.startswith(extra.split("=")[0] + "=") for w in words)):
+    if extra and (
+        extra.split("=")[0] not in KINDS[kind].keys or any(w.startswith(extra.split("=")[0] + "=") for w in words)
+    ):
         extra = ""
     head = "netlist 1\nground REF\n"
     line = f"X1 {kind} {' '.join(words)} {extra}".rstrip()

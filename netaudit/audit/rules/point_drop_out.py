@@ -5,7 +5,7 @@ The input voltage of a regulator is below what it needs to hold its output, and 
     v_IN - v_GND < V_set + V_drop
 
 or the input of a converter is below V_I_min.  One whose input has no power at nominal values (below 0.3 V) is off and
-not reported.
+not reported, unless its input is left open (``IN:nc``).
 
 Mend: more input voltage, or a regulator with less drop-out.
 
