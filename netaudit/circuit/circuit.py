@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Mapping
 from dataclasses import dataclass, field
 
+from netaudit.circuit.export_summary import ExportSummary
 from netaudit.devices.base import Device
 from netaudit.finding import Finding
 from netaudit.parts.part import Part
@@ -73,3 +74,4 @@ class Board:
     findings: tuple[Finding, ...] = ()
     files: Mapping[str, str] = field(default_factory=dict)
     cautions: tuple[str, ...] = ()
+    exports: tuple[ExportSummary, ...] = ()

@@ -8,6 +8,7 @@ from dataclasses import dataclass, field, replace
 from netaudit.circuit.blocks import Opener
 from netaudit.circuit.build import Builder, covered
 from netaudit.circuit.circuit import Board, Circuit, Expectation, HeatPath
+from netaudit.circuit.export_summary import ExportSummary
 from netaudit.circuit.packages import opened_packages, package_statement, packages_in
 from netaudit.circuit.raw import RawDevice, Spec, changed, sort_items
 from netaudit.devices import KINDS
@@ -18,6 +19,7 @@ from netaudit.parts.tables import PartTable, common_table, read_table
 from netaudit.place import Place
 from netaudit.quantities.quantity import Quantity, exact
 from netaudit.quantities.read import read_quantity, read_span
+from netaudit.syntax.export_settings import DEFAULTS, ExportSettings
 from netaudit.syntax.statements import (
     AmbientStatement,
     BlockStatement,
@@ -51,16 +53,20 @@ class _Mode:
     place: Place | None = None
 
 
-def elaborate(netlist: Netlist, table: PartTable | None = None) -> Board:
-    """The board of a netlist; ``table`` (for example a project's) comes before the netlist's own part tables."""
-    return Elaboration(netlist, table or PartTable()).board()
+def elaborate(netlist: Netlist, table: PartTable | None = None, settings: ExportSettings = DEFAULTS) -> Board:
+    """The board of a netlist; ``table`` (for example a project's) comes before the netlist's own part tables,
+    ``settings`` say how its exports are mapped."""
+    return Elaboration(netlist, table or PartTable(), settings).board()
 
 
 class Elaboration:
     """Works a netlist out, room by room."""
 
-    def __init__(self, netlist: Netlist, table: PartTable) -> None:
+    def __init__(self, netlist: Netlist, table: PartTable, settings: ExportSettings) -> None:
         self.netlist = netlist
+        self.settings = settings
+        self.exports: list[ExportSummary] = []
+        self.left_out: list[str] = []
         self.cautions: list[str] = []
         tables = [s for s in netlist.statements if isinstance(s, PartsStatement)]
         for statement in tables:
@@ -119,7 +125,9 @@ class Elaboration:
         devices: list[RawDevice] = []
         packages: list[DeviceStatement] = []
         for export in [*drawn, *([merged(tables)] if tables else [])]:
-            mapped = map_export(export, self.table)
+            mapped = map_export(export, self.table, self.settings)
+            self.exports.append(mapped.summary)
+            self.left_out += mapped.omitted
             devices += mapped.devices
             packages += [package_statement(i, part, self.blocks) for i, part in mapped.packages]
             self.packages |= {i.name: (part, i.place) for i, part in mapped.packages}
@@ -152,6 +160,7 @@ class Elaboration:
 
     def _known_pin(self, device: str, pin: str, place: Place) -> str:
         pins = self.raws[device].pins
+        pin = pin if pin in pins else self.raws[device].aliases.get(pin, pin)
         if pin not in pins:
             raise InputError(f"{device} has no pin {pin}", place=place, mend=f"it has {' '.join(pins)}")
         return pin
@@ -209,6 +218,10 @@ class Elaboration:
             raise InputError("only modes, but no mode is defined", place=place, mend="add a mode, or remove this line")
         return list(modes.values())
 
+    def _parts_of(self, name: str) -> list[str]:
+        """The designator, or those of the devices in a package."""
+        return [name] if name in self.raws else [n for n in self.raws if n.startswith(f"{name}/")]
+
     def _applied(self, changes: Iterable[ChangeStatement], state: _State) -> None:
         for change in changes:
             if isinstance(change, AmbientStatement):
@@ -224,7 +237,7 @@ class Elaboration:
                 state.omitted -= {self._known(w) for w in change.designators}
 
     def _top(self) -> _State:
-        state = _State(_AMBIENT)
+        state = _State(_AMBIENT, omitted={raw for name in self.left_out for raw in self._parts_of(name)})
         kept = (AmbientStatement, SetStatement, OmitStatement, PlaceStatement)
         self._applied([s for s in self.netlist.statements if isinstance(s, kept)], state)
         return state
@@ -245,6 +258,7 @@ class Elaboration:
             tuple(self.builder.findings.values()),
             {**self.netlist.files, **self.table.files, **self.builder.files},
             tuple(self.cautions),
+            tuple(self.exports),
         )
 
     def _circuit(self, mode: _Mode, top: _State, base: dict[str, Device]) -> Circuit:

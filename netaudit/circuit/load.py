@@ -7,6 +7,7 @@ from dataclasses import replace
 
 from netaudit.circuit.circuit import Board
 from netaudit.circuit.elaborate import elaborate
+from netaudit.circuit.export_section import export_settings
 from netaudit.failure import InputError
 from netaudit.parts.tables import PartTable, read_table
 from netaudit.place import Place
@@ -16,6 +17,7 @@ from netaudit.project.read import project_at
 from netaudit.syntax.collector import collector_paused
 from netaudit.syntax.lines import logical_lines
 from netaudit.syntax.parse import Parser
+from netaudit.syntax.paths import project_root
 from netaudit.syntax.reader import read_netlist, read_netlist_text
 from netaudit.syntax.statements import ModeStatement, Netlist, SetStatement
 
@@ -27,11 +29,12 @@ def load_board(path: str, root: str | None = None, changes: Sequence[str] = ()) 
     ``netaudit.toml`` at the project's root adds its part tables.
     """
     with collector_paused():
-        netlist = with_changes(read_netlist(path, root=root), changes)
-        project = project_at(netlist.root)
+        project = project_at(project_root(path, root))
         if project is None:
-            return elaborate(netlist)
-        board = elaborate(netlist, project_table(project))
+            return elaborate(with_changes(read_netlist(path, root=root), changes))
+        settings = export_settings(project.export)
+        netlist = with_changes(read_netlist(path, root=root, settings=settings), changes)
+        board = elaborate(netlist, project_table(project), settings)
         return replace(board, files={**board.files, project.file: project.sha256})
 
 

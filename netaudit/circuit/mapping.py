@@ -1,233 +1,268 @@
-"""From an export's instances to devices: by the part table, then by the letters of the designator.
+"""From an export's instances to devices: by the part table, by the project's rules, then by the designator's letters.
 
-Order: part number, then value, looked up in the part table; then designator letters (IEC 81346-2, IEEE 315 and common
-practice).  Package pins become terminals by the part's ``pins``; two-pin parts without polarity need none; a polarised
-part without a pin map is the finding ``part/no-pin-map``.  What stays unknown becomes ``unmodelled``, by name.
+Order: part number, then value, looked up in the part table; then the rules of ``[export]``; then designator letters
+(IEC 81346-2, IEEE 315 and common practice).  Package pins become terminals by the part's ``pins``; two-pin parts without
+polarity need none; a polarised part without a pin map is the finding ``part/no-pin-map``.  What stays unknown becomes
+``unmodelled``, by name; symbols that are no parts are left out, by name too.
 """
 
 from __future__ import annotations
 
 import re
-from collections.abc import Mapping, Sequence
-from dataclasses import dataclass, field, replace
+from collections.abc import Mapping
+from dataclasses import dataclass, field
+from functools import cached_property
 
-from netaudit.circuit.people import read_people
+from netaudit.circuit.export_summary import ExportSummary
+from netaudit.circuit.gather import clashing_names, gathered
+from netaudit.circuit.pins import natural, terminals
 from netaudit.circuit.raw import RawDevice, Spec
+from netaudit.circuit.stated import Stated, state_of, value_of
 from netaudit.devices import KINDS
 from netaudit.devices.base import Kind
 from netaudit.finding import Finding
 from netaudit.parts.part import Part
 from netaudit.parts.tables import PartTable
 from netaudit.syntax.export import Export, Instance
+from netaudit.syntax.export_settings import DEFAULTS, ExportSettings, Rule, folded
 from netaudit.syntax.statements import Word
 
-PART_NAMES = (
-    "part number",
-    "partnumber",
-    "part_number",
-    "mpn",
-    "manufacturer part number",
-    "part",
-    "device",
-    "name",
-    "comment",
-)
-VALUE_NAMES = ("value", "val", "comment")
-TOLERANCE_NAMES = ("tolerance", "tol")
-#: rating symbols by the property names that are read as them
-RATING_NAMES: Mapping[str, tuple[str, ...]] = {
-    "P_tot": ("p_tot", "power", "max. power dissipation", "power rating", "wattage"),
-    "V_R": ("v_r", "vr", "rated voltage", "voltage rating", "max. voltage", "voltage"),
-    "I_F": ("i_f", "if", "imax", "max. current", "forward current"),
-    "I_max": ("i_max", "rated current", "current rating", "max. current", "imax"),
-    "V_max": ("v_max", "element voltage", "max. voltage"),
+#: words in a value, part or symbol that tell what a diode or transistor is, for its designator's letters
+_WORDS = {
+    "diode": (("LED", "led"), ("ZENER", "zener"), ("TVS", "suppressor")),
+    "Q": (("NPN", "npn"), ("PNP", "pnp"), ("NMOS", "nmos"), ("PMOS", "pmos")),
 }
-#: designator letters whose kind leaves no choice
-LETTERS: Mapping[str, str] = {
-    "R": "resistor", "C": "capacitor", "L": "inductor", "D": "diode", "CR": "diode", "VD": "diode", "LED": "led",
-    "DS": "led", "HL": "led", "VR": "zener", "J": "connector", "P": "connector", "X": "connector", "CN": "connector",
-    "JP": "connector", "XP": "connector", "XS": "connector", "TP": "testpoint",
-}  # fmt: skip
-_UNIT_LETTER = re.compile(r"^(?P<base>.*?[A-Za-z]+\d+)(?P<unit>[A-Z])$")
-_UNITS = {"resistor": "ohm", "capacitor": "F", "inductor": "H"}
+_LETTERS = re.compile(r"^(?:.*/)?([^\W\d_]+)")
+_SYMBOL = re.compile(r"off.?page|^(?:gnd|ground|earth|power|pwr|vcc|vdd|vss|vee)(?![a-z])", re.IGNORECASE)
+_YES = frozenset({"1", "yes", "y", "true", "x", "t"})
+_NO = frozenset({"0", "no", "n", "false", "f"})
 
 
 @dataclass
 class Mapped:
-    """What mapping gave: devices, findings, remarks for the report, and counts of (kind, by which rule)."""
+    """What mapping gave: devices, packages of several devices, what is not fitted, findings, and a summary by name."""
 
-    devices: list[RawDevice] = field(default_factory=list)
-    findings: list[Finding] = field(default_factory=list)
-    remarks: list[str] = field(default_factory=list)
-    counts: dict[tuple[str, str], int] = field(default_factory=dict)
-    packages: list[tuple[Instance, Part]] = field(default_factory=list)
+    devices: list[RawDevice]
+    packages: list[tuple[Instance, Part]]
+    omitted: list[str]
+    findings: list[Finding]
+    remarks: list[str]
+    summary: ExportSummary
 
 
-def map_export(export: Export, table: PartTable) -> Mapped:
+def map_export(export: Export, table: PartTable, settings: ExportSettings = DEFAULTS) -> Mapped:
     """Devices of an export; nothing is dropped silently."""
-    mapped = Mapped(remarks=[f"{export.file}: {r}" for r in export.remarks])
-    for instance in gathered(export.instances):
-        part = find_part(instance, table)
-        if part is not None and part.block is not None:
-            mapped.packages.append((instance, part))
-            continue
-        device, rule = _device(instance, table, mapped)
-        mapped.devices.append(device)
-        key = (device.kind.name, rule)
-        mapped.counts[key] = mapped.counts.get(key, 0) + 1
-    mapped.remarks.insert(0, _summary(export, mapped))
-    return mapped
+    return Mapper(export, table, settings).mapped()
 
 
-def _summary(export: Export, mapped: Mapped) -> str:
-    kinds = ", ".join(f"{n} {kind} by {rule}" for (kind, rule), n in sorted(mapped.counts.items(), key=lambda c: -c[1]))
-    return f"{export.file}: {len(mapped.devices) + len(mapped.packages)} parts, {len(export.nets)} nets: {kinds}" + (
-        f", {len(mapped.packages)} packages of several devices" if mapped.packages else ""
-    )
+@dataclass
+class Mapper:
+    """Goes through the parts of one export."""
 
+    export: Export
+    table: PartTable
+    settings: ExportSettings
+    kinds: dict[tuple[str, str], list[str]] = field(default_factory=dict)
+    unread: dict[str, str] = field(default_factory=dict)
+    resting: dict[str, list[str]] = field(default_factory=dict)
+    ratings: dict[tuple[str, str], list[str]] = field(default_factory=dict)
+    findings: list[Finding] = field(default_factory=list)
 
-def gathered(instances: Sequence[Instance]) -> list[Instance]:
-    """Parts drawn as several units come together: the same designator, or one designator with a unit letter."""
-    letters: dict[str, list[Instance]] = {}
-    for instance in instances:
-        match = _UNIT_LETTER.match(instance.name)
-        if match is not None:
-            letters.setdefault(match["base"], []).append(instance)
-    names = {i.name for i in instances}
-    bases = {
-        i.name: base
-        for base, group in letters.items()
-        if len(group) > 1 and base not in names and len({g.cell for g in group}) == 1
-        for i in group
-    }
-    order: dict[str, Instance] = {}
-    for instance in instances:
-        name = bases.get(instance.name, instance.name)
-        known = order.get(name)
-        if known is None:
-            order[name] = replace(instance, name=name)
-        else:
-            stated = {p.name.casefold() for p in known.properties}
-            more = tuple(p for p in instance.properties if p.name.casefold() not in stated)
-            order[name] = replace(known, pins={**instance.pins, **known.pins}, properties=(*known.properties, *more))
-    return list(order.values())
+    def mapped(self) -> Mapped:
+        together = gathered(self.export.instances)
+        self.findings += [*together.findings, *clashing_names(self.export, together.parts)]
+        devices: list[RawDevice] = []
+        packages: list[tuple[Instance, Part]] = []
+        omitted: list[str] = []
+        symbols: list[str] = []
+        for instance in together.parts:
+            rule = next((r for r in self.settings.rules if self._fits(r, instance)), None)
+            part = self.find_part(instance, rule)
+            if part is None and rule is None and self._is_symbol(instance):
+                symbols.append(instance.name)
+                continue
+            if self._left_out(instance, rule):
+                omitted.append(instance.name)
+            if part is not None and part.block is not None:
+                packages.append((instance, part))
+                self.kinds.setdefault((f"package ({part.block})", "part table"), []).append(instance.name)
+                continue
+            device, why = self._device(instance, part, rule, instance.name in omitted)
+            devices.append(device)
+            self.kinds.setdefault((device.kind.name, why), []).append(device.name)
+        remarks = [f"{self.export.file}: {r}" for r in self.export.remarks]
+        remarks += [
+            f"{self.export.file}: {', '.join(names[:12])}{f' and {len(names) - 12} more' if len(names) > 12 else ''} "
+            f"taken as {state}: an export knows no positions; change it with set"
+            for state, names in self.resting.items()
+        ]
+        summary = self._summary(omitted, symbols, together.units)
+        return Mapped(devices, packages, omitted, self.findings, remarks, summary)
 
-
-def _device(instance: Instance, table: PartTable, mapped: Mapped) -> tuple[RawDevice, str]:
-    part = find_part(instance, table)
-    if part is not None and part.kind in KINDS:
-        kind, rule = KINDS[part.kind or ""], "part table"
-    else:
-        letters = re.match(r"^(?:.*/)?([A-Za-z]+)", instance.designator)
-        name = LETTERS.get(letters[1].upper() if letters else "", "unmodelled")
-        kind, rule = KINDS[name], "designator letter" if name != "unmodelled" else "nothing"
-    spec = _spec(instance, kind, part, mapped)
-    if spec is None:
-        return _unknown(instance), "no readable value"
-    pins = terminals(instance, kind, part)
-    if isinstance(pins, str):
-        _no_pin_map(instance, kind, part, pins, mapped)
-        return _unknown(instance), "no pin map"
-    return RawDevice(instance.name, kind, spec, pins, instance.place), rule
-
-
-def _unknown(instance: Instance) -> RawDevice:
-    return RawDevice(instance.name, KINDS["unmodelled"], Spec(), dict(instance.pins), instance.place)
-
-
-def find_part(instance: Instance, table: PartTable) -> Part | None:
-    """The table row that the export names: part number, then value, then the cell's name."""
-    texts = [p.text.strip() for names in (PART_NAMES, VALUE_NAMES) if (p := instance.value(names)) is not None]
-    texts += [p.text.strip() for p in instance.properties if p.name.casefold() in (*PART_NAMES, *VALUE_NAMES)]
-    for text in [*texts, instance.cell]:
-        part = table.get(text) if text else None
-        if part is not None:
-            return part
-    return None
-
-
-def _spec(instance: Instance, kind: Kind, part: Part | None, mapped: Mapped) -> Spec | None:
-    """What stands on the device's line; None when a value that must be known cannot be read."""
-    keys: dict[str, Word] = {}
-    if part is not None:
-        keys["part"] = Word(part.name, instance.place)
-    for symbol, names in RATING_NAMES.items():
-        _rating(instance, kind, symbol, names, keys, part)
-    unit = _UNITS.get(kind.name)
-    if unit is None:
-        return Spec(keys=keys)
-    found = instance.value(VALUE_NAMES)
-    written = read_people(found.text, unit) if found is not None else None
-    if found is not None and found.number is not None and written is None:
-        written = read_people(f"{found.number!r}{unit}", unit)
-    if written is None:
-        said = f"its value {found.text!r} cannot be read" if found is not None else "it has no value"
-        mapped.remarks.append(f"{instance.place.file}:{instance.place.line}: {instance.name}: {said}")
-        return None if kind.name == "resistor" else Spec(keys=keys)
-    value = Word(written.value, instance.place)
-    tolerance = written.tolerance or _tolerance(instance)
-    return Spec(value, None, Word(tolerance, instance.place) if tolerance else None, None, keys)
-
-
-def _tolerance(instance: Instance) -> str:
-    found = instance.value(TOLERANCE_NAMES)
-    match = re.search(r"(\d+(?:[.,]\d+)?)\s*%", found.text) if found is not None else None
-    return f"{match[1].replace(',', '.')}%" if match else ""
-
-
-def _rating(
-    instance: Instance, kind: Kind, symbol: str, names: tuple[str, ...], keys: dict[str, Word], part: Part | None
-) -> None:
-    if symbol not in kind.ratings or (part is not None and symbol in part.ratings):
-        return
-    found = instance.value(names)
-    if found is None:
-        return
-    unit = {"P": "W", "V": "V", "I": "A"}[symbol[0]]
-    written = read_people(found.text, unit)
-    if written is not None:
-        keys[symbol] = Word(written.value, instance.place)
-
-
-def terminals(instance: Instance, kind: Kind, part: Part | None) -> dict[str, str | None] | str:
-    """Terminals to nets, or the package pins that cannot be told apart."""
-    if not kind.pin_sets:
-        return dict(instance.pins)
-    named = {**instance.pins, **{port: instance.pins[pin] for pin, port in instance.ports.items()}}
-    if part is not None and part.pins:
-        out: dict[str, str | None] = {}
-        for package, terminal in part.pins.items():
-            if package in named and out.setdefault(terminal, named[package]) is None:
-                out[terminal] = named[package]
-        return _filled(kind, out)
-    for pins in kind.pin_sets:
-        if set(named) <= set(pins) or set(pins) <= set(named):
-            return _filled(kind, {p: named.get(p) for p in pins})
-    plain = next((pins for pins in kind.pin_sets if pins == ("1", "2")), None)
-    if plain is not None and len(instance.pins) <= 2:
-        nets = [*instance.pins.values(), None, None][:2]
-        return dict(zip(plain, nets, strict=True))
-    return ", ".join(instance.pins) or "none"
-
-
-def _filled(kind: Kind, pins: dict[str, str | None]) -> dict[str, str | None]:
-    """Terminals that the export leaves unconnected stay open."""
-    every = kind.pins_for(list(pins))
-    return {pin: pins.get(pin) for pin in every}
-
-
-def _no_pin_map(instance: Instance, kind: Kind, part: Part | None, pins: str, mapped: Mapped) -> None:
-    wanted = " ".join(kind.pin_sets[0])
-    example = ", ".join(f'"{p}" = "{t}"' for p, t in zip(instance.pins, kind.pin_sets[0], strict=False))
-    where = f"the row of {part.name}" if part is not None else "a part row"
-    mapped.findings.append(
-        Finding(
-            "part/no-pin-map",
-            "error",
-            f"{instance.name} is a {kind.name} with package pins {pins}; which of them are {wanted} is not known: add "
-            f"pins = {{ {example} }} (in the right order) to {where}",
-            device=instance.name,
-            file=instance.place.file,
-            line=instance.place.line,
+    def _summary(self, omitted: list[str], symbols: list[str], units: Mapping[str, int]) -> ExportSummary:
+        kinds = sorted(self.kinds.items(), key=lambda item: (-len(item[1]), item[0]))
+        return ExportSummary(
+            self.export.file,
+            len(self.export.instances),
+            len(self.export.nets),
+            tuple((kind, why, tuple(names)) for (kind, why), names in kinds),
+            tuple(omitted),
+            tuple(self.unread.items()),
+            tuple(symbols),
+            tuple(units.items()),
+            tuple((symbol, name, tuple(parts)) for (symbol, name), parts in self.ratings.items()),
         )
-    )
+
+    def _fits(self, rule: Rule, instance: Instance) -> bool:
+        return all(any(test.match(text) for text in self._texts(instance, what)) for what, test in rule.tests)
+
+    def _texts(self, instance: Instance, what: str) -> list[str]:
+        """What a pattern of a rule looks at: a designator, cell, value or part number, else the property of that name."""
+        if what == "designator":
+            return [instance.name, instance.designator]
+        if what == "cell":
+            return [instance.cell]
+        names = self.settings.called(what) if what in ("value", "part") else {folded(what)}
+        return [p.text.strip() for p in instance.properties if folded(p.name) in names]
+
+    def _is_symbol(self, instance: Instance) -> bool:
+        """A drawing symbol, no part: ``#`` before its name, or a single pin on the net that it is called after."""
+        if instance.designator.startswith("#"):
+            return True
+        if len(instance.pins) > 1 or self._by_letters(instance) != "unmodelled":
+            return False
+        if not instance.pins:
+            return not instance.properties and bool(_SYMBOL.search(instance.cell))
+        net = next(iter(instance.pins.values())).rsplit("/", 1)[-1].casefold()
+        values = self._texts(instance, "value")
+        called = {t.casefold() for t in (instance.cell, *values, *instance.ports.values(), *instance.pins)}
+        return net in called or bool(_SYMBOL.search(instance.cell))
+
+    def _left_out(self, instance: Instance, rule: Rule | None) -> bool:
+        """Not fitted, by a rule, a property that says so, or a mark in a text."""
+        if rule is not None and rule.fitted is not None:
+            return not rule.fitted
+        for p in instance.properties:
+            text, name = p.text.strip(), folded(p.name)
+            if not text:
+                continue
+            if name in self.settings.called("not-fitted") and (text.casefold() in _YES or folded(text) == name):
+                return True
+            if name in self.settings.called("fitted") and text.casefold() in _NO:
+                return True
+            shown = name in self.settings.called("value") or name in self.settings.called("part")
+            if self.settings.marked(text, whole=not shown):
+                return True
+        return False
+
+    def _by_letters(self, instance: Instance) -> str:
+        name = instance.designator if _LETTERS.match(instance.designator) else instance.symbol
+        found = _LETTERS.match(name)
+        if found is None and instance.symbol:
+            found = _LETTERS.match(instance.symbol)
+        letters = found[1].upper() if found is not None else ""
+        kind = self.settings.letters.get(letters, "")
+        options = _WORDS.get(kind or letters, ())
+        if options:
+            said = " ".join(
+                (instance.cell, *self._texts(instance, "value"), *self._texts(instance, "description"))
+            ).upper()
+            for word, better in options:
+                if re.search(rf"(?<![A-Z]){word}(?![A-Z])", said):
+                    return better
+        return kind or "unmodelled"
+
+    def _device(self, instance: Instance, part: Part | None, rule: Rule | None, omitted: bool) -> tuple[RawDevice, str]:
+        kind, why = self._kind(instance, part, rule)
+        stated = Stated(instance, kind, part, rule, self.settings)
+        found = value_of(stated)
+        if found.unread and not omitted:
+            self.unread[instance.name] = found.unread
+        if found.lacking:
+            return self._unknown(instance, part), "value not read"
+        state = state_of(stated, found.value is not None)
+        if state is not None and (rule is None or not rule.state):
+            self.resting.setdefault(state.text, []).append(instance.name)
+        pins = terminals(instance, kind, part)
+        if isinstance(pins, str):
+            if not omitted:
+                self._no_pin_map(instance, kind, part, pins)
+            return self._unknown(instance, None), "no pin map"
+        keys: dict[str, Word] = {}
+        if part is not None:
+            keys["part"] = Word(part.name, instance.place)
+        for symbol, (word, name) in stated.ratings().items():
+            keys[symbol] = word
+            self.ratings.setdefault((symbol, name), []).append(instance.name)
+        spec = Spec(found.value, None, found.tolerance, state, keys)
+        return RawDevice(instance.name, kind, spec, pins, instance.place, _aliases(instance, pins)), why
+
+    def _kind(self, instance: Instance, part: Part | None, rule: Rule | None) -> tuple[Kind, str]:
+        if part is not None and part.kind in KINDS:
+            ruled = rule is not None and rule.part == part.name
+            return KINDS[part.kind or ""], "mapping rule" if ruled else "part table"
+        if rule is not None and rule.kind:
+            return KINDS[rule.kind], "mapping rule"
+        name = self._by_letters(instance)
+        return KINDS[name], "designator letter" if name != "unmodelled" else "nothing known"
+
+    def _unknown(self, instance: Instance, part: Part | None) -> RawDevice:
+        kind = KINDS["unmodelled"]
+        pins = dict(sorted(terminals_of(instance, part).items(), key=lambda pin: natural(pin[0])))
+        return RawDevice(instance.name, kind, Spec(), pins, instance.place, _aliases(instance, pins))
+
+    @cached_property
+    def _rows(self) -> dict[str, str]:
+        """Names of rows without letter case, where that is no other row's."""
+        rows: dict[str, str] = {}
+        for name in self.table.rows:
+            rows[name.casefold()] = "" if name.casefold() in rows else name
+        return rows
+
+    def find_part(self, instance: Instance, rule: Rule | None = None) -> Part | None:
+        """The table row that the export names: part number, then value, then the cell's name; then the rule's."""
+        for what in ("part", "value"):
+            # names in the order of the settings, not in that of the drawing
+            texts = {folded(p.name): p.text.strip() for p in reversed(instance.properties) if p.text.strip()}
+            for name in self.settings.columns[what]:
+                part = self._row(texts.get(folded(name), ""))
+                if part is not None:
+                    return part
+        return self._row(instance.cell) or self._row(rule.part if rule is not None else "")
+
+    def _row(self, text: str) -> Part | None:
+        if not text or not self.table.rows:
+            return None
+        return self.table.get(text) or self.table.get(self._rows.get(text.casefold(), ""))
+
+    def _no_pin_map(self, instance: Instance, kind: Kind, part: Part | None, pins: str) -> None:
+        wanted = " ".join(kind.pin_sets[0])
+        order = sorted(instance.pins, key=natural)
+        example = ", ".join(f'"{p}" = "{t}"' for p, t in zip(order, kind.pin_sets[0], strict=False))
+        where = f"the row of {part.name}" if part is not None else "a part row"
+        self.findings.append(
+            Finding(
+                "part/no-pin-map",
+                "error",
+                f"{instance.name} is a {kind.name} with {pins}; which of them are {wanted} is not known: add "
+                f"pins = {{ {example} }} (in the right order) to {where}",
+                device=instance.name,
+                file=instance.place.file,
+                line=instance.place.line,
+            )
+        )
+
+
+def terminals_of(instance: Instance, part: Part | None) -> dict[str, str | None]:
+    found = terminals(instance, KINDS["unmodelled"], part)
+    assert not isinstance(found, str)  # a kind with any pins takes them all
+    return found
+
+
+def _aliases(instance: Instance, pins: Mapping[str, str | None]) -> dict[str, str]:
+    """Port names by which a pin may be called as well, those of several pins by the first."""
+    out: dict[str, str] = {}
+    for pin, port in instance.ports.items():
+        if port not in pins and pin in pins:
+            out.setdefault(port, pin)
+    return out

@@ -32,6 +32,8 @@ class RawDevice:
     spec: Spec
     pins: Mapping[str, str | None]
     place: Place
+    #: further names of pins: the port names of an export's part
+    aliases: Mapping[str, str] = field(default_factory=dict)
 
 
 def sort_items(name: str, kind: Kind, items: Items) -> Spec:

@@ -3,8 +3,7 @@
 from __future__ import annotations
 
 import argparse
-import sys
-from pathlib import Path
+import os
 from typing import Any
 
 from netaudit.failure import InputError
@@ -25,27 +24,31 @@ def add(commands: Any) -> None:
 
 
 def run(options: argparse.Namespace) -> int:
+    from netaudit.circuit.export_section import export_settings
+    from netaudit.circuit.load import project_table
     from netaudit.circuit.mapping import map_export
+    from netaudit.cli.common import deliver
     from netaudit.parts.tables import PartTable, read_table
+    from netaudit.project.read import find_project
     from netaudit.report.netlist_text import netlist_text
-    from netaudit.syntax.reader import read_bytes, read_export
+    from netaudit.syntax.reader import LARGEST_EXPORT, read_bytes, read_export
     from netaudit.syntax.tables import merged
 
-    table = PartTable()
+    project = find_project(os.path.dirname(options.files[0]) or os.curdir)
+    settings = export_settings(project.export if project is not None else None)
+    table = project_table(project) if project is not None else PartTable()
     for path in options.parts:
         table = table.merge(read_table(path))
     exports = []
     for path in options.files:
         if not path.lower().endswith((".edf", ".edn", ".edif", ".csv")):
             raise InputError(f"{path} is no export", mend="its name must end in .edf, .edn, .edif or .csv")
-        exports.append(read_export(read_bytes(path, path, None), path))
+        exports.append(read_export(read_bytes(path, path, None, LARGEST_EXPORT), path, settings))
     export = merged(exports) if len(exports) > 1 else exports[0]
-    text = netlist_text(export, map_export(export, table), options.parts)
+    parts = options.parts
     if options.output:
-        try:
-            Path(options.output).write_text(text, encoding="utf-8")
-        except OSError as error:
-            raise InputError(f"{options.output} cannot be written: {error.strerror}") from None
-    else:
-        sys.stdout.write(text)
+        # a netlist names files from where it stands
+        beside = os.path.dirname(options.output) or os.curdir
+        parts = [os.path.relpath(path, beside).replace(os.sep, "/") for path in parts]
+    deliver(netlist_text(export, map_export(export, table, settings), parts), options.output)
     return 0

@@ -9,6 +9,7 @@ from netaudit.circuit.circuit import Board
 from netaudit.failure import printable
 from netaudit.finding import Finding
 from netaudit.quantities.write import engineering
+from netaudit.report.export_text import export_lines
 from netaudit.report.json_text import CAUTIONS
 from netaudit.report.style import Style, flow, table, wrapped
 
@@ -71,7 +72,7 @@ def _grouped(findings: Iterable[Finding], key: Callable[[Finding], tuple[object,
 
 def lint_text(board: Board, findings: Sequence[Finding], failed: bool, style: Style, notes: bool) -> str:
     """The report of ``lint``."""
-    lines = [*_headline(board, failed, style, "lint"), ""]
+    lines = [*_headline(board, failed, style, "lint"), *_exports(board, style), ""]
     lines += findings_text(findings, style, notes)
     said = "Structure only: nothing was solved, no rating was looked at."
     lines += [_counted(findings), ""]
@@ -82,7 +83,8 @@ def lint_text(board: Board, findings: Sequence[Finding], failed: bool, style: St
 
 def audit_text(audit: Audit, failed: bool, style: Style, notes: bool, version: str) -> str:
     """The report of ``audit``: verdict, coverage, findings worst first, stresses, how sure it is, cautions."""
-    lines = [*_headline(audit.board, failed, style, "audit", audit.complete), *_coverage(audit, style)]
+    lines = [*_headline(audit.board, failed, style, "audit", audit.complete)]
+    lines += [*_exports(audit.board, style), *_coverage(audit, style)]
     if audit.partial:
         lines += wrapped(f"Partial, and so no pass: {audit.partial}.", style.width, "")
     lines.append("")
@@ -94,6 +96,16 @@ def audit_text(audit: Audit, failed: bool, style: Style, notes: bool, version: s
     lines += ["", *(c for caution in CAUTIONS for c in wrapped(caution, style.width, ""))]
     lines.append(style.faint(f"netaudit {version}, policy {audit.policy}"))
     return "\n".join(lines) + "\n"
+
+
+def _exports(board: Board, style: Style) -> list[str]:
+    """What was understood of the schematic exports."""
+    return [part for s in board.exports for line in export_lines(s) for part in _indented(line, style)]
+
+
+def _indented(line: str, style: Style) -> Iterable[str]:
+    inner = line.lstrip()
+    return wrapped(inner, style.width, " " * (len(line) - len(inner)))
 
 
 def _samples(audit: Audit, style: Style) -> list[str]:

@@ -32,6 +32,8 @@ class Instance:
     place: Place
     #: port names by package pin, where both are known
     ports: Mapping[str, str] = field(default_factory=dict)
+    #: designator of the symbol (``R?``), for instances that have none of their own
+    symbol: str = ""
 
     def value(self, names: tuple[str, ...]) -> Property | None:
         """The first property, not empty, whose name is one of these (compared without case); None when there is none."""
@@ -51,3 +53,5 @@ class Export:
     nets: tuple[str, ...]
     remarks: tuple[str, ...] = ()
     encoding: str = "utf-8"
+    #: (first net, second net, line) of nets with one name, or names that differ only in letter case
+    clashes: tuple[tuple[str, str, int], ...] = ()

@@ -13,7 +13,7 @@ from netaudit.place import Place
 from netaudit.syntax.collector import collector_paused
 from netaudit.syntax.grammar import grammar_text
 
-_PIECES = re.compile(r'"[^"]*"|[^\s()"]+')
+_PIECES = re.compile(r'\(\s*[^\s()"]+|\)|"[^"]*"|[^\s()"]+|\n')
 _BRACKETS = re.compile(r'"[^"]*"|\(|\)|\n|"')
 _ESCAPE = re.compile(r"%([^%]*)%")
 
@@ -33,10 +33,20 @@ class Form:
                 yield item
 
     def first(self, *keywords: str) -> Form | None:
-        return next(self.forms(*keywords), None)
+        for item in self.items:
+            if isinstance(item, Form) and item.keyword in keywords:
+                return item
+        return None
 
     def atoms(self) -> list[str]:
         return [item for item in self.items if isinstance(item, str)]
+
+    def atom(self) -> str:
+        """The first atom; empty when there is none."""
+        for item in self.items:
+            if isinstance(item, str):
+                return item
+        return ""
 
 
 def read_forms(text: str, file: str) -> Form:
@@ -56,11 +66,13 @@ def _parser() -> Any:
     from lark import Lark, Transformer
 
     class Build(Transformer[Any, Form]):
-        def leaf(self, children: list[Any]) -> Form:
-            return _form(str(children[0])[1:-1], children[0].line, [])
+        def whole(self, children: list[Any]) -> Form:
+            return _built(str(children[0]), children[0].line)
 
         def form(self, children: list[Any]) -> Form:
-            return _form(str(children[0])[1:], children[0].line, children[1:])
+            head = _built(str(children[0]), children[0].line)
+            head.items += [c if isinstance(c, Form) else str(c) for c in children[1:]]
+            return head
 
         def start(self, children: list[Any]) -> Form:
             return children[0]  # type: ignore[no-any-return]  # see read_forms
@@ -68,9 +80,50 @@ def _parser() -> Any:
     return Lark(grammar_text("edif.lark"), parser="lalr", lexer="basic", transformer=Build())
 
 
-def _form(head: str, line: int, rest: list[Any]) -> Form:
-    pieces: list[Any] = _PIECES.findall(head)
-    return Form(pieces[0].lower(), pieces[1:] + [r if isinstance(r, Form) else str(r) for r in rest], line)
+def _built(text: str, line: int) -> Form:
+    """The form of a token, with the few levels of forms inside it.
+
+    Most of a large file passes through this loop: every keyword is lowered once, and a line is counted where it ends.
+    """
+    keywords = _KEYWORDS
+    outermost: Form | None = None
+    above: list[list[Form | str]] = []
+    items: list[Form | str] = []
+    for piece in _PIECES.findall(text):
+        first = piece[0]
+        if first == "(":
+            keyword = keywords.get(piece)
+            if keyword is None:
+                keyword = _keyword(piece)
+            form = Form(keyword, [], line)
+            if outermost is None:
+                outermost = form
+            items.append(form)
+            above.append(items)
+            items = form.items
+            if "\n" in piece:
+                line += piece.count("\n")
+        elif first == ")":
+            items = above.pop()
+        elif first == "\n":
+            line += 1
+        else:
+            items.append(piece)
+            if first == '"' and "\n" in piece:
+                line += piece.count("\n")
+    assert outermost is not None  # every token begins with a bracket and a keyword
+    return outermost
+
+
+#: keywords as written, with their bracket, to keywords in lower case
+_KEYWORDS: dict[str, str] = {}
+
+
+def _keyword(piece: str) -> str:
+    keyword = piece[1:].strip().lower()
+    if len(_KEYWORDS) < 1000:
+        _KEYWORDS[piece] = keyword
+    return keyword
 
 
 def _unbalanced(text: str, file: str, error: Exception) -> InputError:

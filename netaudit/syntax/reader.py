@@ -12,6 +12,7 @@ from netaudit.place import Place
 from netaudit.quantities.text import shown
 from netaudit.syntax.collector import collector_paused
 from netaudit.syntax.export import Export
+from netaudit.syntax.export_settings import DEFAULTS, ExportSettings
 from netaudit.syntax.lines import LogicalLine, logical_lines
 from netaudit.syntax.parse import Mark, Parser
 from netaudit.syntax.paths import below_root, project_root
@@ -27,6 +28,8 @@ from netaudit.syntax.statements import (
 )
 
 LARGEST_FILE = 64 << 20
+#: 200,000 parts with a dozen properties each
+LARGEST_EXPORT = 256 << 20
 _EXPORTS = (".edf", ".edn", ".edif", ".csv")
 
 
@@ -40,11 +43,12 @@ class _Reading:
     only_modes: Place | None = None
     designators: dict[str, Place] = field(default_factory=dict)
     named: dict[tuple[str, str], Place] = field(default_factory=dict)
+    settings: ExportSettings = DEFAULTS
 
 
-def read_netlist(path: str, *, root: str | None = None) -> Netlist:
+def read_netlist(path: str, *, root: str | None = None, settings: ExportSettings = DEFAULTS) -> Netlist:
     """A netlist and all that it includes.  Raises InputError with the place of whatever cannot be used."""
-    reading = _Reading(project_root(path, root))
+    reading = _Reading(project_root(path, root), settings=settings)
     with collector_paused():
         _read_file(path, reading, None, (os.path.realpath(path),))
     return Netlist(path, reading.root, tuple(reading.statements), reading.only_modes, reading.files)
@@ -66,7 +70,7 @@ def _read_file(path: str, reading: _Reading, include: Word | None, above: tuple[
     _read_text(decode(data, path, chain), path, reading, chain, above)
 
 
-def read_bytes(path: str, shown: str, place: Place | None) -> bytes:
+def read_bytes(path: str, shown: str, place: Place | None, most: int = LARGEST_FILE) -> bytes:
     """The content of a file; InputError when there is none, it is a folder, or it is too large."""
     named = shown if len(shown) <= 300 else f"{shown[:300]}…"
     try:
@@ -74,13 +78,13 @@ def read_bytes(path: str, shown: str, place: Place | None) -> bytes:
             raise InputError(f"{named} is a folder", place=place, mend="name a file in it")
         with Path(path).open("rb") as file:
             # a device or pipe has no size to ask for
-            data = file.read(LARGEST_FILE + 1)
+            data = file.read(most + 1)
     except (OSError, ValueError) as error:
         reason = getattr(error, "strerror", None) or str(error)
         mend = "a name is relative to the file that it stands in" if place else "check the name"
         raise InputError(f"{named} cannot be read: {reason}", place=place, mend=mend) from None
-    if len(data) > LARGEST_FILE:
-        raise InputError(f"{named} is too large", place=place, mend=f"at most {LARGEST_FILE >> 20} MiB are read")
+    if len(data) > most:
+        raise InputError(f"{named} is too large", place=place, mend=f"at most {most >> 20} MiB are read")
     return data
 
 
@@ -191,20 +195,20 @@ def _include(mark: Mark, reading: _Reading, chain: tuple[Place, ...], above: tup
 
 
 def _export(path: str, mark: Mark, reading: _Reading) -> ExportStatement:
-    data = read_bytes(path, path, mark.name.place)
+    data = read_bytes(path, path, mark.name.place, LARGEST_EXPORT)
     reading.files[path] = hashlib.sha256(data).hexdigest()
-    return ExportStatement(read_export(data, path), mark.place)
+    return ExportStatement(read_export(data, path, reading.settings), mark.place)
 
 
-def read_export(data: bytes, shown: str) -> Export:
+def read_export(data: bytes, shown: str, settings: ExportSettings = DEFAULTS) -> Export:
     """An export by the ending of its name: EDIF 2 0 0, or a CSV table."""
     if shown.lower().endswith(".csv"):
         from netaudit.syntax.tables import read_table
 
-        return read_table(data, shown)
+        return read_table(data, shown, settings)
     from netaudit.syntax.edif import read_edif
 
-    return read_edif(data, shown)
+    return read_edif(data, shown, settings)
 
 
 def _closed(mark: Mark, body: list[Statement]) -> Statement:

@@ -10,17 +10,14 @@ from dataclasses import dataclass, field
 
 from netaudit.failure import InputError
 from netaudit.place import Place
-from netaudit.syntax.edif import decode
+from netaudit.syntax.decode import decode
 from netaudit.syntax.export import Export, Instance, Property
+from netaudit.syntax.export_settings import DEFAULTS, ExportSettings, folded
 
-#: column headings understood, compared without case, blanks, dots, dashes and underscores
-COLUMNS: dict[str, tuple[str, ...]] = {
-    "designator": ("designator", "refdes", "reference", "references", "ref", "component", "part", "device", "instance"),
-    "pin": ("pin", "pinnumber", "pinno", "pinname", "pad", "terminal"),
-    "net": ("net", "netname", "signal", "signalname", "node"),
-}
 _BOUNDS = re.compile(r"^(?P<letters>[^\d\s]+)(?P<first>\d+)\s*(?:-|\.\.|–)\s*(?P=letters)?(?P<last>\d+)$")
 _LARGEST_GROUP = 10_000
+#: rows among which the headings are looked for
+_TITLES = 30
 
 
 @dataclass(frozen=True)
@@ -44,27 +41,27 @@ class _Part:
     properties: list[Property] = field(default_factory=list)
 
 
-def read_table(data: bytes, file: str, columns: dict[str, tuple[str, ...]] | None = None) -> Export:
+def read_table(data: bytes, file: str, settings: ExportSettings = DEFAULTS) -> Export:
     """A connection table (columns designator, pin, net) or a list of parts (designator and anything else).
 
     Raises InputError with a line for missing columns, empty cells where something must stand, a pin on two nets.
     """
-    text, encoding = decode(data)
+    text, encoding = decode(data, settings.encoding)
     rows = list(_rows(text, file))
     if not rows:
         raise InputError("the table is empty", place=Place(file, 1), mend="its first row names the columns")
-    headings = _headings(rows[0], file, columns or COLUMNS)
+    start, headings = _heading_row(rows, file, settings)
     connections = {"pin", "net"} <= set(headings.columns)
     if not connections and {"pin", "net"} & set(headings.columns):
         lacking = "net" if "pin" in headings.columns else "pin"
         raise InputError(
             f"a connection table needs the columns designator, pin and net: there is no {lacking}",
-            place=Place(file, rows[0].line),
+            place=Place(file, rows[start].line),
             mend=f"name a column {lacking}",
         )
     parts: dict[str, _Part] = {}
     nets: dict[str, None] = {}
-    for row in rows[1:]:
+    for row in rows[start + 1 :]:
         (_connection if connections else _listed)(row, headings, parts, nets, file)
     instances = tuple(Instance(name, name, "", tuple(p.properties), p.pins, p.place) for name, p in parts.items())
     remarks = () if encoding == "utf-8" else (f"the file is not UTF-8: read as {encoding}",)
@@ -90,29 +87,32 @@ def _rows(text: str, file: str) -> Iterator[_Row]:
 
 
 def _separator(text: str) -> str:
-    """Comma, semicolon or tab: the one that splits the heading most."""
-    first = re.sub(r'"[^"]*"', "", text.lstrip().split("\n", 1)[0])
-    return max(",;\t", key=first.count)
+    """Comma, semicolon, tab or bar: the one that splits one of the first rows most."""
+    lines = re.sub(r'"[^"]*"', "", text[:20_000]).lstrip().split("\n")[:_TITLES]
+    return max(",;\t|", key=lambda separator: max(line.count(separator) for line in lines))
 
 
-def _plain(heading: str) -> str:
-    return re.sub(r"[\s._\-#]+", "", heading).casefold()
+def _heading_row(rows: Sequence[_Row], file: str, settings: ExportSettings) -> tuple[int, Headings]:
+    """The row that names the columns: the first with designators, after titles that some tools write."""
+    for number, row in enumerate(rows[:_TITLES]):
+        headings = _headings(row, settings)
+        if "designator" in headings.columns and len([c for c in row.cells if c.strip()]) > 1:
+            return number, headings
+    raise InputError(
+        "no column with the designators: " + ", ".join(c.strip() for c in rows[0].cells)[:200],
+        place=Place(file, rows[0].line),
+        mend="name it designator",
+    )
 
 
-def _headings(row: _Row, file: str, known: dict[str, tuple[str, ...]]) -> Headings:
+def _headings(row: _Row, settings: ExportSettings) -> Headings:
     found: dict[str, int] = {}
-    headings = [_plain(c) for c in row.cells]
-    for name, words in known.items():
-        for word in words:
-            if _plain(word) in headings and headings.index(_plain(word)) not in found.values():
-                found[name] = headings.index(_plain(word))
+    headings = [folded(c) for c in row.cells]
+    for name in ("designator", "pin", "net"):
+        for word in map(folded, settings.columns[name]):
+            if word in headings and headings.index(word) not in found.values():
+                found[name] = headings.index(word)
                 break
-    if "designator" not in found:
-        raise InputError(
-            "no column with the designators: " + ", ".join(c.strip() for c in row.cells)[:200],
-            place=Place(file, row.line),
-            mend="name it designator",
-        )
     others = tuple((k, c.strip()) for k, c in enumerate(row.cells) if k not in found.values() and c.strip())
     return Headings(found, others)
 

@@ -57,16 +57,18 @@ class TomlText:
                 return self._at(offset)
         return Place(self.file, 1)
 
-    def rows(self, name: str) -> tuple[dict[str, Place], ...]:
-        """For each ``[[name]]`` heading the places of its keys; that of the heading itself under the empty name."""
+    def rows(self, *name: str) -> tuple[dict[str, Place], ...]:
+        """For each ``[[name]]`` heading the places of its keys; that of the heading itself under the empty name.
+        ``rows("a", "b")`` looks for ``[[a.b]]``."""
         found: list[dict[str, Place]] = []
+        size = len(name)
         for path, offset in mentions(self.text):
-            if path[:1] != (name,):
+            if path[:size] != name:
                 continue
-            if self.text.startswith("[[", offset) and len(path) == 1:
+            if self.text.startswith("[[", offset) and len(path) == size:
                 found.append({"": self._at(offset)})
-            elif found and len(path) > 1:
-                found[-1].setdefault(path[1], self._at(offset))
+            elif found and len(path) > size:
+                found[-1].setdefault(path[size], self._at(offset))
         return tuple(found)
 
     def _at(self, offset: int) -> Place:

@@ -88,5 +88,5 @@ def test_converting_gives_the_same_circuit(tmp_path: Path, capsys: pytest.Captur
 
 def test_counts_say_by_which_rule() -> None:
     mapped = map_export(read_table(TABLE, "b.csv"), PartTable())
-    assert mapped.counts[("resistor", "designator letter")] == 1
-    assert "6 parts" in mapped.remarks[0]
+    assert ("resistor", "designator letter", ("R1",)) in mapped.summary.kinds
+    assert mapped.summary.parts == 6
