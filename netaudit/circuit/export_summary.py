@@ -11,7 +11,8 @@ class ExportSummary:
 
     ``kinds``: kind, by which rule, designators; ``unread``: designator and what could not be read; ``symbols``: drawing
     symbols that are no parts; ``units``: packages drawn in several units and in how many; ``ratings``: rating symbol,
-    property it was read from, designators.
+    property it was read from, designators;
+    ``unconnected``: fitted parts of which no pin is on a net.
     """
 
     file: str
@@ -23,6 +24,7 @@ class ExportSummary:
     symbols: tuple[str, ...] = ()
     units: tuple[tuple[str, int], ...] = ()
     ratings: tuple[tuple[str, str, tuple[str, ...]], ...] = ()
+    unconnected: tuple[str, ...] = ()
 
     @property
     def parts(self) -> int:

@@ -129,15 +129,16 @@ def _clash(name: str, twin: str, first: Instance, second: Instance) -> Finding:
 def clashing_names(export: Export, parts: Sequence[Instance]) -> Iterable[Finding]:
     """Nets of one name, and names that differ only in letter case."""
     for first, second, line in export.clashes:
-        same = (
-            "a second net has the same name"
-            if second.startswith(f"{first}~")
-            else "differs from it only in letter case"
+        same = first.casefold() != second.casefold()
+        said = (
+            f"a second net is called {first}, here {second}"
+            if same
+            else f"nets {first} and {second} differ only in letter case"
         )
         yield Finding(
             "graph/clashing-names",
             "warning",
-            f"net {first}: {same}; {second} is kept apart from it: if the two are one net, draw it as one",
+            f"{said}: they are kept apart; if they are one net, draw it as one",
             net=first,
             file=export.file,
             line=line,

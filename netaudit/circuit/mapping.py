@@ -96,10 +96,14 @@ class Mapper:
             f"taken as {state}: an export knows no positions; change it with set"
             for state, names in self.resting.items()
         ]
-        summary = self._summary(omitted, symbols, together.units)
+        left_out = {*omitted, *symbols}
+        alone = [i.name for i in together.parts if not i.pins and i.name not in left_out]
+        summary = self._summary(omitted, symbols, together.units, alone)
         return Mapped(devices, packages, omitted, self.findings, remarks, summary)
 
-    def _summary(self, omitted: list[str], symbols: list[str], units: Mapping[str, int]) -> ExportSummary:
+    def _summary(
+        self, omitted: list[str], symbols: list[str], units: Mapping[str, int], alone: list[str]
+    ) -> ExportSummary:
         kinds = sorted(self.kinds.items(), key=lambda item: (-len(item[1]), item[0]))
         return ExportSummary(
             self.export.file,
@@ -111,6 +115,7 @@ class Mapper:
             tuple(symbols),
             tuple(units.items()),
             tuple((symbol, name, tuple(parts)) for (symbol, name), parts in self.ratings.items()),
+            tuple(alone),
         )
 
     def _fits(self, rule: Rule, instance: Instance) -> bool:
@@ -239,7 +244,9 @@ class Mapper:
         wanted = " ".join(kind.pin_sets[0])
         order = sorted(instance.pins, key=natural)
         example = ", ".join(f'"{p}" = "{t}"' for p, t in zip(order, kind.pin_sets[0], strict=False))
-        where = f"the row of {part.name}" if part is not None else "a part row"
+        texts = [*self._texts(instance, "part"), *self._texts(instance, "value"), instance.cell]
+        called = next((t for t in texts if t), instance.name)
+        where = f"the row of {part.name}" if part is not None else f'a part row for {called!r}, kind = "{kind.name}"'
         self.findings.append(
             Finding(
                 "part/no-pin-map",

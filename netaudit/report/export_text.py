@@ -12,22 +12,27 @@ _SHOWN = 12
 
 def export_lines(summary: ExportSummary, most: int = _SHOWN) -> Iterable[str]:
     """One sentence a line: counts, kinds by rule, then what was not understood, by name."""
-    by_kind: dict[str, list[str]] = {}
+    by_rule: dict[str, list[str]] = {}
+    unknown: dict[str, list[str]] = {}
+    left_out = set(summary.not_fitted)
     for kind, why, names in summary.kinds:
-        by_kind.setdefault(why, []).append(f"{len(names)} {kind}")
+        if kind != "unmodelled" or why in _BY:
+            by_rule.setdefault(why, []).append(f"{len(names)} {kind}")
+        if kind == "unmodelled":
+            unknown.setdefault(why, []).extend(n for n in names if n not in left_out)
     yield (
-        f"Export {printable(summary.file)}: {summary.instances} instances, {summary.parts} parts, {summary.nets} nets."
+        f"Export {printable(summary.file)}: {_count(summary.instances, 'instance')}, {_count(summary.parts, 'part')}, "
+        f"{_count(summary.nets, 'net')}."
     )
-    for why, kinds in by_kind.items():
-        yield (
-            f"  by {_WHY.get(why, why)}: {', '.join(kinds)}"
-            if why not in _NOT
-            else f"  {_NOT[why]}: {', '.join(kinds)}"
-        )
-    if summary.unmodelled:
-        yield f"  not modelled: {_names(summary.unmodelled, most)}"
+    for why, kinds in by_rule.items():
+        yield f"  by {_BY[why]}: {', '.join(kinds)}"
+    for why, names in unknown.items():
+        if names:
+            yield f"  not modelled, {_WHY.get(why, 'as its row says')}: {_names(names, most)}"
     if summary.not_fitted:
         yield f"  not fitted: {_names(summary.not_fitted, most)}"
+    if summary.unconnected:
+        yield f"  on no net: {_names(summary.unconnected, most)}"
     if summary.unread:
         said = [f"{name} ({why})" for name, why in summary.unread]
         yield f"  values that were not read: {_names(said, most)}"
@@ -40,8 +45,12 @@ def export_lines(summary: ExportSummary, most: int = _SHOWN) -> Iterable[str]:
         yield f"  ratings found in the export: {_names(said, most)}"
 
 
-_WHY = {"designator letter": "designator letters", "mapping rule": "mapping rules", "part table": "the part table"}
-_NOT = {"nothing known": "nothing known of", "value not read": "value not read", "no pin map": "no pin map"}
+_BY = {"designator letter": "designator letters", "mapping rule": "mapping rules", "part table": "the part table"}
+_WHY = {"nothing known": "nothing known", "value not read": "value not read", "no pin map": "pins not known"}
+
+
+def _count(number: int, what: str) -> str:
+    return f"{number} {what}{'' if number == 1 else 's'}"
 
 
 def _names(names: Sequence[str], most: int) -> str:

@@ -61,7 +61,7 @@ class Flattener:
         while waiting:
             waiting += reversed(list(self._open(waiting.pop())))
         if self.encoding != "utf-8":
-            self.remarks.append(f"the file is not UTF-8: read as {self.encoding}")
+            self.remarks.append(f"the file is not UTF-8: read as {self.encoding} (encoding in [export] names another)")
         nets, instances = tuple(self.nets), tuple(self.instances)
         if self.tied:
             nets = tuple(n for n in nets if n not in self.tied)
@@ -243,7 +243,7 @@ class Flattener:
             self._contradictions(placed)
         name = self._name(placed)
         cell = target.name if target is not None else placed.cell[1]
-        symbol = target.designator if target is not None else ""
+        symbol = placed.designator or (target.designator if target is not None else "")
         place = Place(self.design.file, placed.line)
         return Instance(level.path + name, name, cell, tuple(properties), pins, place, ports, symbol)
 

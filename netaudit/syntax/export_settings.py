@@ -16,6 +16,7 @@ COLUMNS: Mapping[str, tuple[str, ...]] = {
     ),
     "refdes": ("designator", "refdes", "ref des", "reference designator", "reference", "part reference"),
     "pin": ("pin", "pin number", "pin no", "pin name", "pad", "pad number", "package pin", "terminal"),
+    "port": ("pin name", "port", "port name", "function"),
     "net": ("net", "net name", "signal", "signal name", "node"),
     "value": ("value", "val", "nominal", "comment"),
     "part": (

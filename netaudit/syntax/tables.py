@@ -38,6 +38,7 @@ class _Row:
 class _Part:
     place: Place
     pins: dict[str, str] = field(default_factory=dict)
+    ports: dict[str, str] = field(default_factory=dict)
     properties: list[Property] = field(default_factory=list)
 
 
@@ -63,8 +64,14 @@ def read_table(data: bytes, file: str, settings: ExportSettings = DEFAULTS) -> E
     nets: dict[str, None] = {}
     for row in rows[start + 1 :]:
         (_connection if connections else _listed)(row, headings, parts, nets, file)
-    instances = tuple(Instance(name, name, "", tuple(p.properties), p.pins, p.place) for name, p in parts.items())
-    remarks = () if encoding == "utf-8" else (f"the file is not UTF-8: read as {encoding}",)
+    instances = tuple(
+        Instance(name, name, "", tuple(p.properties), p.pins, p.place, p.ports) for name, p in parts.items()
+    )
+    remarks = (
+        ()
+        if encoding == "utf-8"
+        else (f"the file is not UTF-8: read as {encoding} (encoding in [export] names another)",)
+    )
     return Export(file, instances, tuple(nets), remarks, encoding)
 
 
@@ -88,7 +95,7 @@ def _rows(text: str, file: str) -> Iterator[_Row]:
 
 def _separator(text: str) -> str:
     """Comma, semicolon, tab or bar: the one that splits one of the first rows most."""
-    lines = re.sub(r'"[^"]*"', "", text[:20_000]).lstrip().split("\n")[:_TITLES]
+    lines = re.sub(r'"[^"]*"', "", text[:20_000].lstrip("\r\n ")).split("\n")[:_TITLES]
     return max(",;\t|", key=lambda separator: max(line.count(separator) for line in lines))
 
 
@@ -108,7 +115,7 @@ def _heading_row(rows: Sequence[_Row], file: str, settings: ExportSettings) -> t
 def _headings(row: _Row, settings: ExportSettings) -> Headings:
     found: dict[str, int] = {}
     headings = [folded(c) for c in row.cells]
-    for name in ("designator", "pin", "net"):
+    for name in ("designator", "pin", "net", "port"):
         for word in map(folded, settings.columns[name]):
             if word in headings and headings.index(word) not in found.values():
                 found[name] = headings.index(word)
@@ -133,6 +140,9 @@ def _connection(row: _Row, headings: Headings, parts: dict[str, _Part], nets: di
         # an unconnected pin is listed without a net by many tools
         return
     nets.setdefault(net)
+    port = _cell(row, headings.columns["port"]) if "port" in headings.columns else ""
+    if port:
+        part.ports.setdefault(pin, port)
     if part.pins.setdefault(pin, net) != net:
         raise InputError(
             f"pin {pin} of {designator} is on net {part.pins[pin]} and on net {net}",

@@ -25,7 +25,13 @@ def example(name: str, which: str) -> str:
 
 
 #: nothing but a fault makes a good circuit unsolvable; the others need a part table or an export beside the netlist
-_WITHOUT = {"point/none-found", "stress/pin-voltage", "stress/package-current", "part/no-pin-map", "graph/clashing-names"}
+_WITHOUT = {
+    "point/none-found",
+    "stress/pin-voltage",
+    "stress/package-current",
+    "part/no-pin-map",
+    "graph/clashing-names",
+}
 _STAGES = ("structure", "stress", "point", "expect")
 _WITH = [name for name, rule in RULES.items() if rule.stage in _STAGES and name not in _WITHOUT]
 
