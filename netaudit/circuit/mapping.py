@@ -161,11 +161,8 @@ class Mapper:
         return False
 
     def _by_letters(self, instance: Instance) -> str:
-        name = instance.designator if _LETTERS.match(instance.designator) else instance.symbol
-        found = _LETTERS.match(name)
-        if found is None and instance.symbol:
-            found = _LETTERS.match(instance.symbol)
-        letters = found[1].upper() if found is not None else ""
+        found = [m[1].upper() for m in map(_LETTERS.match, (instance.designator, instance.symbol)) if m is not None]
+        letters = next((f for f in found if f in self.settings.letters), found[0] if found else "")
         kind = self.settings.letters.get(letters, "")
         options = _WORDS.get(kind or letters, ())
         if options:
@@ -213,7 +210,7 @@ class Mapper:
 
     def _unknown(self, instance: Instance, part: Part | None) -> RawDevice:
         kind = KINDS["unmodelled"]
-        pins = dict(sorted(terminals_of(instance, part).items(), key=lambda pin: natural(pin[0])))
+        pins = terminals_of(instance, part)
         return RawDevice(instance.name, kind, Spec(), pins, instance.place, _aliases(instance, pins))
 
     @cached_property

@@ -42,7 +42,8 @@ def _any_pins(instance: Instance, part: Part | None) -> dict[str, str | None]:
     """The pins of a kind that takes any, by the part's names for them where it has some."""
     names = part.pins if part is not None else {}
     out: dict[str, str | None] = {}
-    for pin, net in instance.pins.items():
+    for pin in sorted(instance.pins, key=natural):
+        net = instance.pins[pin]
         name = names.get(pin, pin)
         out[name if out.get(name, net) == net else pin] = net
     return out

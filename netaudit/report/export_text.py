@@ -26,9 +26,9 @@ def export_lines(summary: ExportSummary, most: int = _SHOWN) -> Iterable[str]:
     )
     for why, kinds in by_rule.items():
         yield f"  by {_BY[why]}: {', '.join(kinds)}"
-    for why, names in unknown.items():
-        if names:
-            yield f"  not modelled, {_WHY.get(why, 'as its row says')}: {_names(names, most)}"
+    for why, lacking in unknown.items():
+        if lacking:
+            yield f"  not modelled, {_WHY.get(why, 'as its row says')}: {_names(lacking, most)}"
     if summary.not_fitted:
         yield f"  not fitted: {_names(summary.not_fitted, most)}"
     if summary.unconnected:

@@ -191,7 +191,7 @@ class Reader(Names):
             elif form.keyword == "offpageconnector":
                 name = self.name_of(form)
                 cell.off_page[name.key] = name.original
-            elif form.keyword == "page":
+            elif form.keyword == "page" and not page:
                 # a schematic's page holds instances and nets like the contents themselves
                 self.pages += 1
                 self._contents(form, cell, library, self.pages)

@@ -88,6 +88,9 @@ class Names:
         raise self.fail(f"({form.keyword} ({item.keyword} …)): a name was expected", item.line)
 
     def _array(self, item: Form) -> Name:
+        first = item.first("array")
+        if first is not None:
+            raise self.fail("an array of an array", first.line, "write all sizes in one (array NAME size size)")
         inner = self.name_of(item)
         sizes = tuple(int(a) for a in item.items[1:] if isinstance(a, str) and a.isdigit() and len(a) < 10)
         total = 1

@@ -14,7 +14,14 @@ from netaudit.syntax.collector import collector_paused
 from netaudit.syntax.grammar import grammar_text
 
 _PIECES = re.compile(r'\(\s*[^\s()"]+|\)|"[^"]*"|[^\s()"]+|\n')
-_BRACKETS = re.compile(r'"[^"]*"|\(|\)|\n|"')
+_BRACKETS = re.compile(r'"[^"]*"|\([A-Za-z]{0,20}|\)|\n|"')
+#: forms that stand in few others only, which tells where a closing bracket was forgotten
+_INSIDE = {
+    "edifversion": ("edif",), "library": ("edif",), "external": ("edif",), "design": ("edif",),
+    "cell": ("library", "external"), "view": ("cell",), "contents": ("view",), "interface": ("view",),
+    "instance": ("contents", "page", "net"), "net": ("contents", "page", "net", "netbundle", "listofnets"),
+    "joined": ("net", "interface"),
+}  # fmt: skip
 _ESCAPE = re.compile(r"%([^%]*)%")
 
 
@@ -128,12 +135,17 @@ def _keyword(piece: str) -> str:
 
 def _unbalanced(text: str, file: str, error: Exception) -> InputError:
     """What is wrong with the brackets or quotes, found by one walk over them."""
-    opened: list[int] = []
+    opened: list[tuple[str, int]] = []
+    suspect: tuple[str, int] | None = None
     line = 1
     for match in _BRACKETS.finditer(text):
         token = match.group()
-        if token == "(":
-            opened.append(line)
+        if token[0] == "(":
+            keyword = token[1:].lower()
+            if suspect is None and opened and keyword in _INSIDE and opened[-1][0] not in _INSIDE[keyword]:
+                # a net inside an instance: the instance was not closed
+                suspect = opened[-1]
+            opened.append((keyword, line))
         elif token == ")":
             if not opened:
                 return InputError("a closing bracket too many", place=Place(file, line), mend="remove it")
@@ -144,15 +156,21 @@ def _unbalanced(text: str, file: str, error: Exception) -> InputError:
             return InputError("a string that is never closed", place=Place(file, line), mend='add the closing "')
         line += token.count("\n")
     if opened:
-        return InputError(
-            f"the form that begins here is never closed ({len(opened)} closing brackets are missing at the end)",
-            place=Place(file, opened[-1]),
-            mend="the file is cut short: export it again",
-        )
-    where = int(getattr(error, "line", 1) or 1)
-    return InputError(
-        "this is not an EDIF file", place=Place(file, max(where, 1)), mend="it must begin with (edif ...)"
+        return _unclosed(suspect or opened[-1], len(opened), file, cut=suspect is None)
+    where = max(int(getattr(error, "line", 1) or 1), 1)
+    if text.lstrip()[:5].lower() == "(edif":
+        return InputError("a form without a keyword", place=Place(file, where), mend="a bracket begins with a word")
+    return InputError("this is not an EDIF file", place=Place(file, where), mend="it must begin with (edif ...)")
+
+
+def _unclosed(form: tuple[str, int], count: int, file: str, cut: bool) -> InputError:
+    keyword, line = form
+    lacking = f"{count} closing bracket{'s are' if count > 1 else ' is'} missing at the end"
+    mend = (
+        "the file is cut short: export it again" if cut else "close it before the next form, or export the file again"
     )
+    said = f"the form ({keyword[:40]} that begins here is never closed ({lacking})"
+    return InputError(said, place=Place(file, line), mend=mend)
 
 
 def string(item: str) -> str:
