@@ -175,9 +175,10 @@ def _distinct(found: Iterable[Finding]) -> Iterable[Finding]:
 
 
 def _worst_first(s: Stress) -> tuple[int, float]:
-    """Where the limit is 0 comes first, then by ratio, then what has no rating."""
+    """Where the limit is 0 comes first, then by ratio, then what has no rating; what differs by rounding alone stays in
+    the order of the netlist."""
     if s.ratio is not None:
-        return (1, -s.ratio)
+        return (1, -float(f"{s.ratio:.9g}"))
     return (0, -s.worst) if s.limit is not None else (2, 0.0)
 
 

@@ -97,7 +97,8 @@ def sample(
     values = draw(spans, plan)
     size = chunks(solver, plan.count)
     parts = [values[start : start + size] for start in range(0, plan.count, size)]
-    pieces = [Rows(solver, tuple(spans), nominal, part, True) for part in parts]
+    gain = solver.thermal_gain(nominal) if solver.heat.any else None
+    pieces = [Rows(solver, tuple(spans), nominal, part, True, gain) for part in parts]
     columns = []
     for settled in workers.each(settle, pieces, "samples"):
         solved, count = replace(settled.solved, system=solver.system), len(settled.converged)

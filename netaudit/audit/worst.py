@@ -3,7 +3,8 @@
 Every quantity is a function of a solved board (a batch of them) that is to be maximised, usually a ratio of stress to
 limit.  Sensitivities at the nominal point send each quantity to a vertex of the box; the vertices are solved as one
 batch, sensitivities are looked at again there, and where one points back inside (a power that peaks within a range) the
-extreme is found by a bounded search along that value.  Every vertex solved serves every quantity.
+extreme is found by a bounded search along that value.  Every vertex solved serves every quantity, and vertices of
+quantities that have no value in common are solved as one (``packing``).
 """
 
 from __future__ import annotations
@@ -15,8 +16,9 @@ from typing import Literal
 
 import numpy as np
 
+from netaudit.audit.packing import Mask, Wanted, pack, together
 from netaudit.devices.base import Array
-from netaudit.solve.sensitivity import Variable, assign, chunks, moved, steps, variables
+from netaudit.solve.sensitivity import SHARE, Variable, assign, chunks, moved, steps, variables
 from netaudit.solve.settle import Job, Settled, Solver
 from netaudit.solve.solved import Solved
 from netaudit.workers import IN_PROCESS, Interrupted, Workers
@@ -32,6 +34,9 @@ _ROUNDS = 8
 #: values along which one quantity is searched inside its range in each round
 _INSIDE = 4
 _ZOOM = 4
+#: on boards with more values than this rows are solved together, and influences of less than FAINT of a quantity over a
+#: value's whole span are left out: rounding would make every quantity depend on everything
+_MANY, _FAINT = 40, 1e-7
 #: rows for which every remedy is tried in vain before the rest gets plain Newton only: where so many corners have no
 #: operating point the finding stands, and each further one costs as much as the whole board
 _VAIN = 8
@@ -57,6 +62,7 @@ class Rows:
     start: Solved
     values: Array
     remedies: bool
+    gain: Array | None
 
 
 def settle(rows: Rows, workers: Workers) -> Settled:
@@ -65,7 +71,7 @@ def settle(rows: Rows, workers: Workers) -> Settled:
     overrides, air = assign(rows.spans, rows.values, rows.solver.system.circuit.ambient.nominal)
     rise = start.temperature - np.asarray(start.ambient, dtype=float).reshape(-1, 1)
     ambient = np.broadcast_to(np.asarray(air, dtype=float), (count,))
-    job = Job(overrides, ambient, count, np.repeat(start.u, count, axis=0), rise + ambient[:, None])
+    job = Job(overrides, ambient, count, np.repeat(start.u, count, axis=0), rise + ambient[:, None], gain=rows.gain)
     return rows.solver.settle(job, rows.remedies)
 
 
@@ -88,7 +94,12 @@ class Explorer:
         self.member: list[tuple[int, int]] = [(0, 0)]
         self.known: dict[bytes, int] = {self.middle.tobytes(): 0}
         self._columns: list[Array] = []
+        self._picked: dict[int, Solved] = {}
         self._slopes: dict[int, Array] = {}
+        #: which values each objective was seen to depend on, at any row looked at: (objectives, variables)
+        self._many = len(self.spans) > _MANY
+        self._depends = np.zeros((0, len(self.spans)), dtype=bool)
+        self._gain = solver.thermal_gain(nominal) if self.spans and solver.heat.any else None
         #: corners at which no operating point was found
         self.failures: list[dict[str, float]] = []
         self._lost: set[bytes] = set()
@@ -100,6 +111,7 @@ class Explorer:
         if not objectives:
             return []
         self._columns, self._slopes = [], {}
+        self._depends = np.zeros((len(objectives), len(self.spans)), dtype=bool)
         if not self.spans:
             values = self._table(objectives)
             return [Extreme(float(values[0, k]), self._board(0), {}, "proven") for k in range(len(objectives))]
@@ -135,8 +147,12 @@ class Explorer:
                 return
             looked |= {(int(best[k]), k) for k in todo}
             gradients = self._gradients(objectives, sorted({int(best[k]) for k in todo}))
-            rows = [row for k in todo for row in self._vertices(gradients[int(best[k])][k], int(best[k]))]
-            self._solve(rows)
+            goals = {k: self._vertices(gradients[int(best[k])][k], int(best[k])) for k in todo}
+            packed, _ = pack([Wanted(row, self._matters(k)) for k, rows in goals.items() for row in rows])
+            self._solve(packed)
+            # what a packed row did not better gets its own: a value that was free in it may matter there after all
+            after = np.nanargmax(self._table(objectives), axis=0)
+            self._solve([rows[0] for k, rows in goals.items() if after[k] == best[k]])
 
     def _vertices(self, gradient: Array, row: int) -> list[Array]:
         """The vertex that a gradient points to, and rows in which only the most influential values have gone there: what
@@ -193,10 +209,17 @@ class Explorer:
                 at = float(self.rows[int(best[k])][c])
                 left[k], right[k] = max(float(self.low[c]), at - width), min(float(self.high[c]), at + width)
         ends = {k: np.array([left[k], right[k]]) for k in column}
-        self._solve([self._with(int(best[k]), column[k], v) for k in column for v in ends[k]])
+        found = self._solved_for(best, ends, column)
         table = self._table(objectives)
-        tops = {k: self._parabola(table, int(best[k]), k, c, left[k], right[k]) for k, c in column.items()}
-        self._try(objectives, best, {k: np.array([top]) for k, top in tops.items()}, column)
+        tops = {
+            k: np.array(
+                [_parabola((left[k], float(self.rows[int(best[k])][c]), right[k]), table[[a, int(best[k]), b], k])]
+            )
+            for k, c in column.items()
+            for a, b in [found[k]]
+            if a is not None and b is not None
+        }
+        self._try(objectives, best, tops, column)
 
     def _try(
         self,
@@ -206,27 +229,28 @@ class Explorer:
         column: Mapping[int, int],
     ) -> None:
         """Solves the rows with these values, each objective in its column, and takes over what is better."""
-        wanted = {k: [self._with(int(best[k]), column[k], g) for g in grid] for k, grid in grids.items()}
-        self._solve([row for rows in wanted.values() for row in rows], remedies=False)
+        found = self._solved_for(best, grids, column)
         table = self._table(objectives)
-        for k, rows in wanted.items():
-            for row in (self.known[r.tobytes()] for r in rows if r.tobytes() in self.known):
-                if table[row, k] > table[best[k], k]:
+        for k, rows in found.items():
+            for row in rows:
+                if row is not None and table[row, k] > table[best[k], k]:
                     best[k] = row
 
-    def _parabola(self, table: Array, row: int, k: int, column: int, left: float, right: float) -> float:
-        """Where the parabola through the best row and its two neighbours has its top (the row itself if none)."""
-        at = float(self.rows[row][column])
-        ends = [self._with(row, column, left), self._with(row, column, right)]
-        if not left < at < right or any(r.tobytes() not in self.known for r in ends):
-            return at
-        fl, fr = (table[self.known[r.tobytes()], k] for r in ends)
-        dl, dr = (fl - table[row, k]) / (left - at), (fr - table[row, k]) / (right - at)
-        curvature = (dr - dl) / (right - left)
-        if not curvature < 0:
-            return at
-        slope = dl - curvature * (left - at)
-        return float(np.clip(at - slope / (2 * curvature), left, right))
+    def _solved_for(
+        self, best: np.ndarray, grids: Mapping[int, Array], column: Mapping[int, int]
+    ) -> dict[int, list[int | None]]:
+        """For each objective the rows that differ from its best in one column; None where no point was found."""
+        wanted = {k: [self._with(int(best[k]), column[k], v) for v in grid] for k, grid in grids.items()}
+        for k, c in column.items():
+            self._depends[k, c] = True
+        packed, where = pack([Wanted(row, self._matters(k)) for k, rows in wanted.items() for row in rows])
+        self._solve(packed, remedies=False)
+        numbers = iter(self.known.get(packed[at].tobytes()) for at in where)
+        return {k: [next(numbers) for _ in rows] for k, rows in wanted.items()}
+
+    def _matters(self, k: int) -> Mask:
+        """The values that a row wanted by an objective fixes: those that it depends on; on small boards all of them."""
+        return self._depends[k] if self._many else np.ones(len(self.spans), dtype=bool)
 
     def _with(self, row: int, column: int, value: float) -> Array:
         out = self.rows[row].copy()
@@ -234,8 +258,10 @@ class Explorer:
         return out
 
     def _board(self, row: int) -> Solved:
-        batch, member = self.member[row]
-        return self.boards[batch].pick(member)
+        if row not in self._picked:
+            batch, member = self.member[row]
+            self._picked[row] = self.boards[batch].pick(member)
+        return self._picked[row]
 
     def _table(self, objectives: Sequence[Objective]) -> Array:
         """Every objective on every row solved so far: shape (rows, objectives)."""
@@ -269,7 +295,7 @@ class Explorer:
         """Solves rows as batches, each row started from a solved board; gives those without an operating point."""
         size = chunks(self.solver, len(rows))
         parts = [np.array(rows[start : start + size]) for start in range(0, len(rows), size)]
-        pieces = [Rows(self.solver, self.spans, near, part, remedies) for part in parts]
+        pieces = [Rows(self.solver, self.spans, near, part, remedies, self._gain) for part in parts]
         missed: list[Array] = []
         for values, settled in zip(parts, self.workers.each(settle, pieces, "corners"), strict=True):
             batch = len(self.boards)
@@ -287,31 +313,43 @@ class Explorer:
         """Signed influences at some rows, {row: (objectives, variables)}: the change of each objective for a small
         positive step of each value, zero where it is rounding."""
         todo = [r for r in rows if r not in self._slopes]
-        columns = list(range(len(self.spans)))
-        size = max(1, chunks(self.solver, len(todo) * len(columns)) // max(len(columns), 1)) if todo else 1
+        if todo and 0 not in self._slopes:
+            # the first look, at the nominal row, tells which values may be moved together elsewhere
+            self._gradient_batch(objectives, [0], np.eye(len(self.spans), dtype=bool))
+            todo = [r for r in todo if r != 0]
+        groups = together(self._depends) if self._many else np.eye(len(self.spans), dtype=bool)
+        size = max(1, chunks(self.solver, len(todo) * len(groups)) // max(len(groups), 1)) if todo else 1
         for start in range(0, len(todo), size):
-            part = todo[start : start + size]
-            self._gradient_batch(objectives, part, columns)
+            self._gradient_batch(objectives, todo[start : start + size], groups)
         return {r: self._slopes[r] for r in rows}
 
-    def _gradient_batch(self, objectives: Sequence[Objective], part: Sequence[int], columns: Sequence[int]) -> None:
+    def _gradient_batch(self, objectives: Sequence[Objective], part: Sequence[int], groups: Mask) -> None:
         values = np.array([self.rows[r] for r in part])
-        base = self._gathered(part)
-        near = moved(self.solver, base, self.spans, values, columns)
-        shape = (len(part), len(columns))
-        sign = np.sign(steps(self.spans, values)[:, list(columns)])
+        near = moved(self.solver, self._gathered(part), self.spans, values, groups, self._gain if self._many else None)
+        shape = (len(part), len(groups))
+        sign = np.sign(steps(self.spans, values))
+        least = max(_NEGLIGIBLE, _FAINT * SHARE) if self._many else _NEGLIGIBLE
         table = self._table(objectives)
         for r in part:
-            self._slopes[r] = np.zeros((len(objectives), len(columns)))
+            self._slopes[r] = np.zeros((len(objectives), len(self.spans)))
         for k, f in enumerate(objectives):
             # at a singular point nothing is known of the neighbours: no number, no influence
             with np.errstate(invalid="ignore"):
                 there = np.broadcast_to(f(near), (shape[0] * shape[1],)).reshape(shape)
             here = np.array([table[r, k] for r in part])[:, None]
             change = np.where(np.isfinite(there), there - here, 0.0)
-            change[np.abs(change) <= _NEGLIGIBLE * np.abs(here)] = 0.0
+            change[np.abs(change) <= least * np.abs(here)] = 0.0
+            slopes = self._attributed(change, groups, k) * sign
+            self._depends[k] |= (slopes != 0.0).any(axis=0)
             for i, r in enumerate(part):
-                self._slopes[r][k] = change[i] * sign[i]
+                self._slopes[r][k] = slopes[i]
+
+    def _attributed(self, change: Array, groups: Mask, k: int) -> Array:
+        """Changes by group (rows, groups) as changes by variable: to the one variable of the group on which the objective
+        depends, or to all of them where it is a surprise (they are told apart when they are moved next)."""
+        own = groups & self._depends[k]
+        own = np.where(own.any(axis=1, keepdims=True), own, groups)
+        return np.asarray(change @ own)
 
     def _gathered(self, rows: Sequence[int]) -> Solved:
         """Some rows as one batch."""
@@ -323,3 +361,16 @@ class Explorer:
         num = self.solver.system.numbers(overrides, temperature, ambient, (len(rows),))
         x, u = np.array([s.x for s in singles]), np.array([s.u for s in singles])
         return Solved(self.solver.system, num, x, u, temperature, ambient, overrides)
+
+
+def _parabola(at: tuple[float, float, float], values: Array) -> float:
+    """Where the parabola through three points has its top, within them; the middle one if it has none."""
+    (left, middle, right), (fl, fm, fr) = at, values
+    if not left < middle < right:
+        return middle
+    dl, dr = (fl - fm) / (left - middle), (fr - fm) / (right - middle)
+    curvature = (dr - dl) / (right - left)
+    if not curvature < 0:
+        return middle
+    slope = dl - curvature * (left - middle)
+    return float(np.clip(middle - slope / (2 * curvature), left, right))

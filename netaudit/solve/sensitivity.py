@@ -11,6 +11,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 
 import numpy as np
+from numpy.typing import NDArray
 
 from netaudit.devices.base import Array, Value
 from netaudit.quantities.quantity import Quantity
@@ -64,31 +65,47 @@ def assign(spans: Sequence[Variable], values: Array, ambient: float) -> tuple[di
     return overrides, air
 
 
-def moved(solver: Solver, solved: Solved, spans: Sequence[Variable], values: Array, columns: Sequence[int]) -> Solved:
-    """The boards of ``solved`` (one batch axis of V) each moved a little along each of the given variables.
+def moved(
+    solver: Solver,
+    solved: Solved,
+    spans: Sequence[Variable],
+    values: Array,
+    groups: NDArray[np.bool_],
+    gain: Array | None = None,
+) -> Solved:
+    """The boards of ``solved`` (one batch axis of V) each moved a little along each group of variables.
 
-    ``values``: (V, variables) as solved.  Returns a batch of V * len(columns) members in that order (variable fastest);
-    member (v, k) differs from v by SHARE of the span of variable columns[k], inwards where it stands at its high end.
+    ``values``: (V, variables) as solved; ``groups``: (groups, variables), true where a group has the variable.  Returns a
+    batch of V * groups members in that order (group fastest); member (v, k) differs from v by SHARE of the span of each
+    variable of its group, inwards where it stands at its high end.  ``gain`` is the thermal loop's matrix at a board
+    nearby, which spares the boards' own where there are many.
     """
-    count, width = values.shape[0], len(columns)
-    step = steps(spans, values)[:, columns]
-    grid = np.repeat(values, width, axis=0)
-    member = np.arange(count * width)
-    grid[member, np.tile(np.asarray(columns, dtype=np.intp), count)] += step.reshape(-1)
+    count, width = values.shape[0], len(groups)
+    step = np.where(groups, steps(spans, values)[:, None, :], 0.0)
+    grid = np.repeat(values, width, axis=0) + step.reshape(count * width, -1)
     overrides, air = assign(spans, grid, solver.system.circuit.ambient.nominal)
     air_rows = np.broadcast_to(np.asarray(air, dtype=float), (count * width,))
     air_step = (air_rows - np.repeat(np.broadcast_to(np.asarray(solved.ambient), (count,)), width))[:, None]
     temperature = np.repeat(solved.temperature, width, axis=0) + air_step
-    num = solver.system.numbers(overrides, temperature, air_rows, (count * width,))
     u = np.repeat(solved.u, width, axis=0)
     x = np.repeat(solved.x, width, axis=0)
-    sums = solver.system.handle_sums(num, x, num.branches.value(u)[0])
-    d = sums.reshape(count, width, -1) - solved.handle_sums[:, None, :]
-    dx = respond(solver.system, solved, d, solver.linear)
-    if solver.heat.any:
+
+    def answer() -> tuple[Array, Array]:
+        """The change of the balances at fixed unknowns, and the circuit's answer to it."""
+        num = solver.system.numbers(overrides, temperature, air_rows, (count * width,))
+        sums = solver.system.handle_sums(num, x, num.branches.value(u)[0])
+        d = sums.reshape(count, width, -1) - solved.handle_sums[:, None, :]
+        return d, respond(solver.system, solved, d, solver.linear)
+
+    d, dx = answer()
+    if solver.heat.any and gain is None:
         dx, dt = _with_heat(solver, solved, d, dx)
         temperature[:, solver.heat.devices] += dt.reshape(count * width, -1)
-        num = solver.system.numbers(overrides, temperature, air_rows, (count * width,))
+    elif solver.heat.any and gain is not None:
+        rise = power_change(solver.system, solver.heat, solved, d, dx) @ solver.heat.resistance.T
+        temperature[:, solver.heat.devices] += closed_loop(gain, rise.reshape(count * width, -1).T).T
+        _, dx = answer()
+    num = solver.system.numbers(overrides, temperature, air_rows, (count * width,))
     x = x + dx.reshape(count * width, -1)
     return Solved(solver.system, num, x, solver.system.sense(num, x), temperature, air_rows, overrides)
 

@@ -16,6 +16,10 @@ from netaudit.solve.system import Numbers, Overrides, System
 
 #: temperatures settled to this, kelvin
 TEMPERATURE_STEP = 1e-7
+#: a junction does not warm by hundreds of kelvin in one honest step: this keeps the laws where they are smooth
+_STRIDE = 60.0
+#: turns of the thermal loop by the chord of a board nearby before the members' own matrices are worked out
+_CHORDS = 14
 #: from this many members on a batch runs through the straight-line elimination, up to this many unknowns
 _STRAIGHT_MEMBERS, _STRAIGHT_UNKNOWNS = 48, 600
 #: beyond these a junction law has no meaning; iterates are kept between them
@@ -26,7 +30,8 @@ COLDEST, HOTTEST = -270.0, 3000.0
 class Job:
     """What is to be solved: values that differ from nominal (one batch axis), ambient in degC, and a start.
 
-    ``share`` scales every thermal resistance (1 is the board as it is).
+    ``share`` scales every thermal resistance (1 is the board as it is).  ``gain`` is the loop's matrix at a board
+    nearby: temperatures then move by its chord, which costs nothing, before the members' own matrices are worked out.
     """
 
     overrides: Overrides
@@ -35,6 +40,7 @@ class Job:
     u0: Array
     t0: Array
     share: float = 1.0
+    gain: Array | None = None
 
 
 @dataclass(frozen=True)
@@ -71,7 +77,7 @@ class Solver:
         methods = ["newton"] * job.count
         gain = np.zeros(job.count)
         matrix: Array | None = None
-        for _ in range(40):
+        for turn in range(40):
             num = self.system.numbers(job.overrides, temperature, job.ambient, (job.count,))
             x, u, good, steps, named = self._electrical(num, u, remedies)
             total += steps
@@ -79,7 +85,10 @@ class Solver:
             solved = Solved(self.system, num, x, u, temperature, job.ambient, job.overrides)
             if not self.heat.any or not good.any():
                 return Settled(solved, good, tuple(methods), total, gain, matrix)
-            step, gain, matrix = self._thermal_step(solved, job)
+            if job.gain is not None and turn < _CHORDS:
+                step = np.clip(closed_loop(job.gain, self._thermal_rest(solved, job).T).T, -_STRIDE, _STRIDE)
+            else:
+                step, gain, matrix = self._thermal_step(solved, job)
             moving = good & ~(np.abs(step).max(axis=-1) < TEMPERATURE_STEP)
             if not moving.any():
                 return Settled(solved, good, tuple(methods), total, gain, matrix)
@@ -120,15 +129,21 @@ class Solver:
         x[lost], u[lost] = 0.0, self.system.start
         return x, u, good, steps, named
 
+    def thermal_gain(self, solved: Solved) -> Array:
+        """The loop's matrix R K (h, h) at a board (a batch of one)."""
+        return np.asarray(loop_gain(self.heat, warming(self.system, self.heat, solved, self.linear).slopes)[0][0])
+
+    def _thermal_rest(self, solved: Solved, job: Job) -> Array:
+        """By how much the heated temperatures (batch, h) miss ambient plus R P."""
+        power = solved.powers[:, self.heat.devices]
+        air = np.asarray(job.ambient, dtype=float).reshape(-1, 1)
+        return np.asarray(air + power @ (job.share * self.heat.resistance).T - solved.temperature[:, self.heat.devices])
+
     def _thermal_step(self, solved: Solved, job: Job) -> tuple[Array, Array, Array]:
         """The Newton step of the heated temperatures (batch, h), the largest loop gain and the gain matrix."""
         heat = self.heat
-        resistance = job.share * heat.resistance
-        power = solved.powers[:, heat.devices]
-        air = np.asarray(job.ambient, dtype=float).reshape(-1, 1)
-        rest = air + power @ resistance.T - solved.temperature[:, heat.devices]
+        rest = self._thermal_rest(solved, job)
         slopes = warming(self.system, heat, solved, self.linear).slopes
         gain, largest = loop_gain(heat, slopes, job.share)
         step = closed_loop(gain, rest[..., None])[..., 0]
-        # a junction does not warm by hundreds of kelvin in one honest step: keep the laws where they are smooth
-        return np.clip(step, -60.0, 60.0), largest, gain
+        return np.clip(step, -_STRIDE, _STRIDE), largest, gain
