@@ -347,9 +347,9 @@ class Explorer:
     def _attributed(self, change: Array, groups: Mask, k: int) -> Array:
         """Changes by group (rows, groups) as changes by variable: to the one variable of the group on which the objective
         depends, or to all of them where it is a surprise (they are told apart when they are moved next)."""
-        own = groups & self._depends[k]
-        own = np.where(own.any(axis=1, keepdims=True), own, groups)
-        return np.asarray(change @ own)
+        group = groups.argmax(axis=0)
+        known = (groups & self._depends[k]).any(axis=1)
+        return np.asarray(np.where(self._depends[k] | ~known[group], change[:, group], 0.0))
 
     def _gathered(self, rows: Sequence[int]) -> Solved:
         """Some rows as one batch."""

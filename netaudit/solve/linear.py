@@ -65,9 +65,13 @@ def _solve(jac: Array, right: Array) -> Array:
 
 @dataclass
 class Sparse:
-    """SuperLU for one member at a time; the seen resistances are refreshed on some turns only, they merely steer."""
+    """SuperLU for one member at a time.
 
-    _z: dict[int, Array] = field(default_factory=dict)
+    The seen resistances merely steer: they are refreshed on some turns only, and a batch, whose members are values of
+    one board, takes those of its first member.
+    """
+
+    _z: Array = field(default_factory=lambda: np.zeros(0))
 
     def solve(
         self, system: System, num: Numbers, slope: Array, right: Array, turn: int, shift: Array | None = None
@@ -85,9 +89,9 @@ class Sparse:
             return np.full(system.n, np.nan), np.zeros(system.m)
         x = factor.solve(right)
         x = x + factor.solve(right - jac @ x)
-        if turn >= 0 and (turn < 3 or turn % 4 == 0):
-            self._z[member] = self._seen(system, one, factor)
-        return x, self._z.get(member, np.zeros(system.m))
+        if member == 0 and turn >= 0 and (turn < 3 or turn % 4 == 0):
+            self._z = self._seen(system, one, factor)
+        return x, self._z if len(self._z) == system.m else np.zeros(system.m)
 
     def solve_many(self, system: System, num: Numbers, slope: Array, right: Array) -> Array:
         """J^-1 of several right-hand sides a member: right (batch, k, n), the same shape back."""
