@@ -12,7 +12,8 @@ from netaudit.devices.base import Device
 
 @dataclass(frozen=True)
 class MissingRow:
-    """One row to be written: a name, the kind, who needs it, the ratings and pins that lack, and the checks it opens."""
+    """One row to be written: a name, the kind, who needs it, the ratings and pins that lack, the checks it opens,
+    and what an export says of those who need it."""
 
     name: str
     kind: str
@@ -21,6 +22,7 @@ class MissingRow:
     needs_model: bool
     pins: tuple[str, ...]
     checks: tuple[str, ...]
+    known: tuple[str, ...] = ()
 
 
 def missing_rows(board: Board) -> tuple[MissingRow, ...]:
@@ -30,9 +32,10 @@ def missing_rows(board: Board) -> tuple[MissingRow, ...]:
     for device in fitted(board).values():
         if device.covered or not _lacks(device, unmapped):
             continue
-        name = device.part.name if device.part is not None else f"{device.kind.upper()}-{device.name}"
+        called, _ = board.known.get(device.name, ("", ""))
+        name = device.part.name if device.part is not None else called or f"{device.kind.upper()}-{device.name}"
         groups.setdefault((name, device.kind), []).append(device)
-    rows = [_row(name, kind, devices, unmapped) for (name, kind), devices in groups.items()]
+    rows = [_row(name, kind, devices, unmapped, board) for (name, kind), devices in groups.items()]
     return tuple(sorted(rows, key=lambda r: (-len(r.devices), r.name)))
 
 
@@ -51,7 +54,7 @@ def _lacks(device: Device, unmapped: set[str | None]) -> bool:
     return device.kind == "unmodelled" or bool(device.missing) or device.name in unmapped or bool(_ratings(device))
 
 
-def _row(name: str, kind: str, devices: list[Device], unmapped: set[str | None]) -> MissingRow:
+def _row(name: str, kind: str, devices: list[Device], unmapped: set[str | None], board: Board) -> MissingRow:
     lacking = [pair for d in devices for pair in _ratings(d)]
     first = devices[0]
     pins = tuple(first.pins) if kind == "unmodelled" or first.name in unmapped else ()
@@ -63,4 +66,5 @@ def _row(name: str, kind: str, devices: list[Device], unmapped: set[str | None])
         bool(first.missing) or kind == "unmodelled",
         pins,
         tuple(dict.fromkeys(check for _, check in lacking)),
+        tuple(dict.fromkeys(said for d in devices if (said := board.known.get(d.name, ("", ""))[1]))),
     )

@@ -75,3 +75,5 @@ class Board:
     files: Mapping[str, str] = field(default_factory=dict)
     cautions: tuple[str, ...] = ()
     exports: tuple[ExportSummary, ...] = ()
+    #: for parts of exports: the row name that would be found for them, and what the export says of them
+    known: Mapping[str, tuple[str, str]] = field(default_factory=dict)

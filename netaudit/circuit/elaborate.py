@@ -67,6 +67,7 @@ class Elaboration:
         self.settings = settings
         self.exports: list[ExportSummary] = []
         self.left_out: list[str] = []
+        self.known: dict[str, tuple[str, str]] = {}
         self.cautions: list[str] = []
         tables = [s for s in netlist.statements if isinstance(s, PartsStatement)]
         for statement in tables:
@@ -128,6 +129,7 @@ class Elaboration:
             mapped = map_export(export, self.table, self.settings)
             self.exports.append(mapped.summary)
             self.left_out += mapped.omitted
+            self.known |= mapped.known
             devices += mapped.devices
             packages += [package_statement(i, part, self.blocks) for i, part in mapped.packages]
             self.packages |= {i.name: (part, i.place) for i, part in mapped.packages}
@@ -259,6 +261,7 @@ class Elaboration:
             {**self.netlist.files, **self.table.files, **self.builder.files},
             tuple(self.cautions),
             tuple(self.exports),
+            self.known,
         )
 
     def _circuit(self, mode: _Mode, top: _State, base: dict[str, Device]) -> Circuit:

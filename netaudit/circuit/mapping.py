@@ -15,6 +15,7 @@ from functools import cached_property
 
 from netaudit.circuit.export_summary import ExportSummary
 from netaudit.circuit.gather import clashing_names, gathered
+from netaudit.circuit.people import read_people
 from netaudit.circuit.pins import natural, terminals
 from netaudit.circuit.raw import RawDevice, Spec
 from netaudit.circuit.stated import Stated, state_of, value_of
@@ -48,6 +49,8 @@ class Mapped:
     findings: list[Finding]
     remarks: list[str]
     summary: ExportSummary
+    #: by designator, the row that would be found for it, and what the export says of it
+    known: dict[str, tuple[str, str]]
 
 
 def map_export(export: Export, table: PartTable, settings: ExportSettings = DEFAULTS) -> Mapped:
@@ -75,6 +78,7 @@ class Mapper:
         packages: list[tuple[Instance, Part]] = []
         omitted: list[str] = []
         symbols: list[str] = []
+        known: dict[str, tuple[str, str]] = {}
         for instance in together.parts:
             rule = next((r for r in self.settings.rules if self._fits(r, instance)), None)
             part = self.find_part(instance, rule)
@@ -89,6 +93,7 @@ class Mapper:
                 continue
             device, why = self._device(instance, part, rule, instance.name in omitted)
             devices.append(device)
+            known[device.name] = self._known(instance, device.kind)
             self.kinds.setdefault((device.kind.name, why), []).append(device.name)
         remarks = [f"{self.export.file}: {r}" for r in self.export.remarks]
         remarks += [
@@ -99,7 +104,7 @@ class Mapper:
         left_out = {*omitted, *symbols}
         alone = [i.name for i in together.parts if not i.pins and i.name not in left_out]
         summary = self._summary(omitted, symbols, together.units, alone)
-        return Mapped(devices, packages, omitted, self.findings, remarks, summary)
+        return Mapped(devices, packages, omitted, self.findings, remarks, summary, known)
 
     def _summary(
         self, omitted: list[str], symbols: list[str], units: Mapping[str, int], alone: list[str]
@@ -117,6 +122,15 @@ class Mapper:
             tuple((symbol, name, tuple(parts)) for (symbol, name), parts in self.ratings.items()),
             tuple(alone),
         )
+
+    def _known(self, instance: Instance, kind: Kind) -> tuple[str, str]:
+        """The name of the row that would be found: the part number, the value where it is no number, else the symbol."""
+        stated = [p for p in instance.properties if p.text.strip()]
+        said = ", ".join(f"{p.name} {p.text.strip()}" for p in stated[:6])
+        unit = kind.value.units[0] if kind.value is not None else "ohm"
+        texts = [*self._texts(instance, "part"), *self._texts(instance, "value")]
+        name = next((t for t in texts if t and read_people(t, unit) is None and read_people(t, "F") is None), "")
+        return name or instance.cell, said
 
     def _fits(self, rule: Rule, instance: Instance) -> bool:
         return all(any(test.match(text) for text in self._texts(instance, what)) for what, test in rule.tests)

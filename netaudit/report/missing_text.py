@@ -21,6 +21,9 @@ def missing_text(board: str, rows: Sequence[MissingRow]) -> str:
 def _row(row: MissingRow) -> list[str]:
     users = ", ".join(row.devices[:8]) + (" ..." if len(row.devices) > 8 else "")
     lines = [f"# {len(row.devices)} of them: {printable(users)}"]
+    if row.known:
+        more = f" and {len(row.known) - 4} more" if len(row.known) > 4 else ""
+        lines.append(f"# the export says: {printable('; '.join(row.known[:4]) + more)}")
     if row.checks:
         lines.append(f"# opens: {', '.join(row.checks)}")
     if row.kind == "unmodelled":

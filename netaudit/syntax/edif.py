@@ -54,9 +54,9 @@ class Flattener:
         self.tied: dict[str, str] = {}
         self.globals: dict[str, str] = {}
         self.targets: dict[CellKey, Cell | None] = {}
-        self.blocks = 0
 
     def export(self) -> Export:
+        self._bounded()
         waiting = [_Level(self.design.top, "", {}, (self.design.top.key,))]
         while waiting:
             waiting += reversed(list(self._open(waiting.pop())))
@@ -74,7 +74,6 @@ class Flattener:
         for key, placed in level.cell.placed.items():
             target = self._target(placed)
             pins = on_pin.get(key, {})
-            self._bounded(placed)
             if target is not None and target.placed:
                 if target.key in level.above:
                     raise self._fail(
@@ -85,10 +84,28 @@ class Flattener:
             else:
                 self.instances.append(self._instance(placed, target, pins, level))
 
-    def _bounded(self, placed: Placed) -> None:
-        self.blocks += 1
-        if self.blocks > _MOST:
-            raise self._fail(f"more than {_MOST} parts and blocks", placed.line, "is a block placed too often?")
+    def _bounded(self) -> None:
+        """Counts what the flattened design would hold, cell by cell, before anything is opened."""
+        sizes: dict[CellKey, int] = {}
+        waiting = [self.design.top]
+        begun: set[CellKey] = set()
+        while waiting:
+            cell = waiting[-1]
+            inner = [t for p in cell.placed.values() if (t := self._target(p)) is not None and t.placed]
+            fresh = [t for t in inner if t.key not in sizes and t.key not in begun] if cell.key not in begun else []
+            begun.add(cell.key)
+            if fresh:
+                waiting += fresh
+                continue
+            waiting.pop()
+            # a cell inside itself counts nothing here: opening it says so
+            sizes[cell.key] = len(cell.placed) + sum(sizes.get(t.key, 0) for t in inner)
+            if sizes[cell.key] > _MOST:
+                raise self._fail(
+                    f"cell {cell.name} with its blocks has more than {_MOST} parts",
+                    cell.line,
+                    "is a block placed too often?",
+                )
 
     def _wire_up(self, level: _Level) -> dict[str, dict[str, str]]:
         """Nets of the cell to flat names; gives {instance key: {port key: net}}."""

@@ -45,7 +45,7 @@ def ports_of(placed: Sequence[Placed]) -> dict[str, list[str]]:
 def edif(placed: Sequence[Placed], habits: Habits = Habits()) -> str:
     """The whole file.  Identifiers are numbers; every name that people see is a rename."""
     ports = ports_of(placed)
-    cells = [_cell(number, pins, habits) for number, pins in enumerate(ports.values())]
+    cells = [_cell(number, symbol, pins, habits) for number, (symbol, pins) in enumerate(ports.items())]
     symbols = {symbol: number for number, symbol in enumerate(ports)}
     out = [
         "(edif board (edifVersion 2 0 0) (edifLevel 0) (keywordMap (keywordLevel 0))",
@@ -68,7 +68,7 @@ def edif(placed: Sequence[Placed], habits: Habits = Habits()) -> str:
     return whole.replace("(instance ", "(INSTANCE ").replace("(net ", "(Net ") if habits.upper else whole
 
 
-def _cell(number: int, pins: Sequence[str], habits: Habits) -> str:
+def _cell(number: int, symbol: str, pins: Sequence[str], habits: Habits) -> str:
     ports = []
     for k, pin in enumerate(pins):
         if habits.pins == "name":
@@ -77,7 +77,7 @@ def _cell(number: int, pins: Sequence[str], habits: Habits) -> str:
             ports.append(f"(port p{k} (designator {text(pin)}))")
         else:
             ports.append(f"(port p{k})")
-    return f"  (cell s{number} (cellType GENERIC) (view n (viewType NETLIST) (interface {' '.join(ports)})))"
+    return f"  (cell (rename s{number} {text(symbol)}) (cellType GENERIC) (view n (viewType NETLIST) (interface {' '.join(ports)})))"
 
 
 def _instance(
