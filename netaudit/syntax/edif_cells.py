@@ -195,6 +195,8 @@ class Reader(Names):
                 # a schematic's page holds instances and nets like the contents themselves
                 self.pages += 1
                 self._contents(form, cell, library, self.pages)
+            # what is read is let go: the cells take the memory of the forms
+            form.items.clear()
 
     def _instance(self, form: Form, cell: Cell, library: str) -> None:
         name = self.name_of(form)

@@ -29,7 +29,7 @@ from netaudit.syntax.statements import (
 
 LARGEST_FILE = 64 << 20
 #: 200,000 parts with a dozen properties each
-LARGEST_EXPORT = 256 << 20
+LARGEST_EXPORT = 128 << 20
 _EXPORTS = (".edf", ".edn", ".edif", ".csv")
 
 
