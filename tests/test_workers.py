@@ -4,10 +4,8 @@ from __future__ import annotations
 
 import json
 import os
-import signal
 import subprocess
 import sys
-import time
 from collections.abc import Iterator
 from pathlib import Path
 
@@ -160,13 +158,25 @@ def test_ctrl_c_gives_a_partial_report_and_status_1(tmp_path: Path) -> None:
     board = tmp_path / "long.netlist"
     board.write_text(LADDER, encoding="utf-8")
     out = tmp_path / "report.json"
-    command = [
-        sys.executable, "-m", "netaudit", "audit", str(board), "--samples", "2000000", "--format", "json", "-o", str(out)
-    ]  # fmt: skip
-    started = subprocess.Popen(command, stderr=subprocess.PIPE, text=True, env={**os.environ, "COLUMNS": "80"})
-    time.sleep(4.0)
-    started.send_signal(signal.SIGINT)
-    _, said = started.communicate(timeout=60)
+    arguments = ["audit", str(board), "--samples", "200000", "--format", "json", "-o", str(out)]
+    # the signal comes within a step in the middle, however fast the machine is
+    script = (
+        "import os, signal, sys\n"
+        "from netaudit.cli.main import main\n"
+        "from netaudit.solve.settle import Solver\n"
+        "whole, calls = Solver.settle, []\n"
+        "def settle(self, *a, **k):\n"
+        "    calls.append(1)\n"
+        "    if len(calls) == 8:\n"
+        "        os.kill(os.getpid(), signal.SIGINT)\n"
+        "    return whole(self, *a, **k)\n"
+        "Solver.settle = settle\n"
+        f"sys.exit(main({arguments!r}))\n"
+    )
+    started = subprocess.run(
+        [sys.executable, "-c", script], capture_output=True, text=True, check=False, env={**os.environ, "COLUMNS": "80"}
+    )
+    said = started.stderr
     assert started.returncode == 1
     assert "stopping after this step" in said
     told = json.loads(out.read_text(encoding="utf-8"))
