@@ -74,6 +74,42 @@ _SCHEMAS: Mapping[Shape, Mapping[str, Any]] = {
     },
     "open": {"type": "object"},
 }
+_WORDS = {"oneOf": [{"type": "string", "minLength": 1}, {"type": "array", "items": {"type": "string", "minLength": 1}}]}
+_BY_NAME = {"type": "object", "additionalProperties": _WORDS}
+#: keys of a mapping rule of ``[export]``, which the room of the circuits reads
+_RULE: Mapping[str, Any] = {
+    "when": {"type": "object", "minProperties": 1, "additionalProperties": {"type": "string"}},
+    "kind": _SCHEMAS["text"],
+    "part": _SCHEMAS["text"],
+    "state": _SCHEMAS["text"],
+    "value": _SCHEMAS["text"],
+    "fitted": {"type": "boolean"},
+}
+#: sections that another room reads, for the JSON Schema
+OPEN: Mapping[str, Mapping[str, Any]] = {
+    "export": {
+        "columns": {**_BY_NAME, "description": "further column and property names, by what they hold"},
+        "ratings": {**_BY_NAME, "description": "further property names, by the rating that they hold"},
+        "letters": {
+            "type": "object",
+            "additionalProperties": _SCHEMAS["text"],
+            "description": "kinds by designator letters; none takes one away",
+        },
+        "rules": {
+            "type": "array",
+            "items": {
+                "type": "object",
+                "additionalProperties": False,
+                "required": ["when"],
+                "minProperties": 2,
+                "properties": _RULE,
+            },
+            "description": "patterns of designator, value, part number or a property, and what such a part is",
+        },
+        "not-fitted": {**_WORDS, "description": "marks of parts that are not fitted, instead of the known ones"},
+        "encoding": {**_SCHEMAS["text"], "description": "8-bit character set of exports that are not UTF-8"},
+    }
+}
 
 
 def schema() -> dict[str, Any]:
@@ -81,7 +117,7 @@ def schema() -> dict[str, Any]:
     properties: dict[str, Any] = {name: _schema_of(key) for name, key in KEYS[""].items()}
     for section, keys in KEYS.items():
         if section and "" in keys:
-            properties[section] = _schema_of(keys[""])
+            properties[section] = {**_schema_of(keys[""]), **_table(dict(OPEN[section]))}
         elif section:
             properties[section] = _table({name: _schema_of(key) for name, key in keys.items()})
     return {

@@ -2,13 +2,17 @@
 
 from __future__ import annotations
 
+import tomllib
 from pathlib import Path
 
+import jsonschema
 import pytest
 
 import netaudit
+from netaudit.circuit.export_section import _GIVEN, _KEYS
 from netaudit.cli.main import main
 from netaudit.failure import InputError
+from netaudit.project.keys import schema
 from tests.exports.board import coverage, write
 
 TABLE = "Bauteil,Pin,Netz,Wert,Footprint,Status\nR1,1,VIN,1k,CHIP_0805,\nR1,2,A,,,\nVT1,1,A,X,,\nVT1,2,GND,,,\nR2,1,A,1k,,offen\nR2,2,GND,,,\n"
@@ -119,3 +123,13 @@ def test_what_an_hour_buys_on_a_board_of_300_parts(tmp_path: Path) -> None:
     last, levels = coverage(paths["rows"])
     assert (last.audited, last.covered, len(last.unmodelled), last.checks) == (296, 8, 0, 570)
     assert levels["error"] == 0
+
+
+def test_the_schema_of_the_project_knows_the_keys_that_are_read() -> None:
+    known = schema()["properties"]["export"]["properties"]
+    assert set(known) == set(_KEYS)
+    assert set(known["rules"]["items"]["properties"]) == {"when", *_GIVEN}
+    validator = jsonschema.Draft202012Validator(schema())
+    assert validator.is_valid(tomllib.loads(PROJECT))
+    for wrong in ('[export]\nnot-fited = ["x"]\n', '[[export.rules]]\nkind = "led"\n', "[export.letters]\nVT = 5\n"):
+        assert not validator.is_valid(tomllib.loads(wrong))

@@ -10,7 +10,7 @@ import jsonschema
 import pytest
 
 from netaudit.failure import InputError
-from netaudit.project.keys import KEYS, schema
+from netaudit.project.keys import KEYS, OPEN, schema
 from netaudit.project.read import find_project, project_at, read_project
 from tests.project.schema import SHIPPED, text
 
@@ -147,7 +147,7 @@ def toml(value: Any) -> str:
     return json.dumps(value)
 
 
-@pytest.mark.parametrize("section", KEYS)
+@pytest.mark.parametrize("section", [s for s in KEYS if s not in OPEN])
 def test_the_schema_takes_what_the_reader_takes_and_nothing_else(tmp_path: Path, section: str) -> None:
     validator = jsonschema.Draft202012Validator(schema())
     for name in (*KEYS[section], "unheard"):
@@ -165,4 +165,7 @@ def test_the_schema_takes_what_the_reader_takes_and_nothing_else(tmp_path: Path,
 def test_the_schema_takes_a_full_file() -> None:
     import tomllib
 
-    jsonschema.Draft202012Validator(schema()).validate(tomllib.loads(FULL))
+    content = tomllib.loads(FULL)
+    # what stands in an open section is checked by the room that reads it
+    content["export"] = {"not-fitted": ["DNP"]}
+    jsonschema.Draft202012Validator(schema()).validate(content)
