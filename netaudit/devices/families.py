@@ -20,6 +20,8 @@ Shape = Literal["increasing", "nondecreasing", "other"]
 
 #: relative widening that covers the error of numpy's exp, log and expm1 (measured at most 0.86 ulp) many times over
 WIDEN = 2.0**-50
+#: parts into which an interval is cut for the offset of a curve that bends both ways
+PIECES = 8
 
 
 def widen(low: Array, high: Array) -> tuple[Array, Array]:
@@ -46,6 +48,30 @@ class Family:
         """An enclosure of d phi / d u over [low, high], rounding included."""
         raise NotImplementedError
 
+    def offset_bounds(self, low: Array, high: Array, slope: Array, p: Parameters) -> tuple[Array, Array]:
+        """An enclosure of phi(u) - slope u over [low, high] (``slope`` taken as exact), rounding included.
+
+        Of each of PIECES parts of the interval the better of the plain and the mean-value enclosure counts; the width
+        shrinks with the square of the interval's.
+        """
+        share = np.arange(PIECES + 1).reshape(-1, *([1] * np.ndim(low))) / PIECES
+        edges = low + share * (high - low)
+        edges[-1] = high
+        a, b = edges[:-1], np.maximum(edges[1:], edges[:-1])
+        middle = np.clip(0.5 * a + 0.5 * b, a, b)
+        plain = _line_off(*self.bounds(a, b, p), a, b, slope)
+        mean = _line_off(*self.bounds(middle, middle, p), middle, middle, slope)
+        least, most = self.slope_bounds(a, b, p)
+        half = np.nextafter(np.maximum(b - middle, middle - a), np.inf)
+        reach = np.nextafter(half * np.maximum(np.abs(least - slope), np.abs(most - slope)) * (1 + WIDEN), np.inf)
+        lo = np.maximum(plain[0], np.nextafter(mean[0] - reach, -np.inf))
+        hi = np.minimum(plain[1], np.nextafter(mean[1] + reach, np.inf))
+        return lo.min(axis=0), hi.max(axis=0)
+
+    def touch(self, slope: Array, p: Parameters) -> Array:
+        """About where phi has this slope (nan: nowhere, or not known)."""
+        return np.full(np.shape(slope), np.nan)
+
     def limit(self, old: Array, new: Array, current: Array, rho: Array, p: Parameters) -> Array:
         """The branch's next controlling value, from the linear solution (``new``, ``current``).
 
@@ -54,8 +80,35 @@ class Family:
         return new
 
 
+class Convex(Family):
+    """A family whose phi is convex: above its chord nowhere, below its tangents nowhere."""
+
+    def offset_bounds(self, low: Array, high: Array, slope: Array, p: Parameters) -> tuple[Array, Array]:
+        """Highest at an end of the interval; nowhere below the tangent at (about) the point of that slope."""
+        ends = [_line_off(*self.bounds(u, u, p), u, u, slope) for u in (low, high)]
+        with np.errstate(all="ignore"):
+            at = self.touch(slope, p)
+            at = np.clip(np.where(np.isfinite(at), at, 0.5 * low + 0.5 * high), low, high)
+        floor = _line_off(*self.bounds(at, at, p), at, at, slope)[0]
+        least, most = self.slope_bounds(at, at, p)
+        # phi(u) >= phi(at) + s (u - at) for the true slope s, of which only an enclosure is known
+        left = np.maximum(most - slope, 0.0) * (low - at)
+        right = np.minimum(least - slope, 0.0) * (high - at)
+        dip = np.minimum(left, right) * (1 + WIDEN) - np.finfo(float).tiny
+        return np.nextafter(floor + dip, -np.inf), np.maximum(ends[0][1], ends[1][1])
+
+
+def _line_off(lo: Array, hi: Array, low: Array, high: Array, slope: Array) -> tuple[Array, Array]:
+    """[lo, hi] - slope [low, high], rounded outwards."""
+    a, b = slope * low, slope * high
+    lo, hi = lo - np.maximum(a, b), hi - np.minimum(a, b)
+    slack = 4 * np.finfo(float).eps * (np.maximum(np.abs(a), np.abs(b)) + np.maximum(np.abs(lo), np.abs(hi)))
+    tiny = np.finfo(float).tiny
+    return lo - slack - tiny, hi + slack + tiny
+
+
 @dataclass(frozen=True)
-class Exponential(Family):
+class Exponential(Convex):
     """Junction or breakdown with its series resistance inside the branch.
 
         i = I_S (exp(w / V) - 1),    u = w + R i
@@ -79,6 +132,11 @@ class Exponential(Family):
 
     def slope_bounds(self, low: Array, high: Array, p: Parameters) -> tuple[Array, Array]:
         return self._widened(self.value(low, p)[1], self.value(high, p)[1], low, high, p)
+
+    def touch(self, slope: Array, p: Parameters) -> Array:
+        grown = slope * p["V"] / (1.0 - p["R"] * slope)
+        x = np.log(grown) - p["log_I"]
+        return p["V"] * x + p["R"] * (grown - np.exp(p["log_I"]))
 
     def _widened(self, lo: Array, hi: Array, low: Array, high: Array, p: Parameters) -> tuple[Array, Array]:
         """Both ends grown by the error of the exponent (its magnitude times a few ulp) on top of ``widen``.
@@ -145,7 +203,7 @@ def _bare(x: Array, log_i: Array) -> tuple[Array, Array]:
 
 
 @dataclass(frozen=True)
-class Ramp(Family):
+class Ramp(Convex):
     """phi(u) = max(0, u - offset): the piece from which limits are built, min(a, b) = a - max(0, a - b)."""
 
     parameters = ("offset",)
@@ -164,9 +222,19 @@ class Ramp(Family):
         lo, hi = _shifted(low, high, p["offset"])
         return (lo > 0).astype(float), (hi >= 0).astype(float)
 
+    def touch(self, slope: Array, p: Parameters) -> Array:
+        return np.asarray(p["offset"] + 0.0 * slope)
+
+    def offset_bounds(self, low: Array, high: Array, slope: Array, p: Parameters) -> tuple[Array, Array]:
+        """The lowest point is an end or the corner."""
+        corner = np.clip(self.touch(slope, p), low, high)
+        every = [_line_off(*self.bounds(u, u, p), u, u, slope) for u in (low, corner, high)]
+        lo = np.minimum(np.minimum(every[0][0], every[1][0]), every[2][0])
+        return lo, np.maximum(every[0][1], every[2][1])
+
 
 @dataclass(frozen=True)
-class Square(Family):
+class Square(Convex):
     """phi(u) = max(0, u - offset)^2 / 2: the square law of a field-effect channel (offset is the threshold)."""
 
     parameters = ("offset",)
@@ -183,6 +251,9 @@ class Square(Family):
     def slope_bounds(self, low: Array, high: Array, p: Parameters) -> tuple[Array, Array]:
         lo, hi = _shifted(low, high, p["offset"])
         return np.maximum(lo, 0.0), np.maximum(hi, 0.0)
+
+    def touch(self, slope: Array, p: Parameters) -> Array:
+        return np.asarray(p["offset"] + slope)
 
 
 def _shifted(low: Array, high: Array, offset: Array) -> tuple[Array, Array]:

@@ -7,7 +7,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from netaudit.devices.base import Assembly, Terms, Value
-from netaudit.devices.families import Array, Family, Parameters, Shape, widen
+from netaudit.devices.families import Array, Convex, Family, Parameters, Shape, widen
 
 
 @dataclass(frozen=True)
@@ -41,7 +41,7 @@ class FadingPower(Family):
 
 
 @dataclass(frozen=True)
-class Parabola(Family):
+class Parabola(Convex):
     """phi(u) = u^2 / 2; a product is a b = (phi(r a + b) - phi(r a - b)) / (2 r)."""
 
     shape: Shape = "other"
@@ -56,6 +56,9 @@ class Parabola(Family):
 
     def slope_bounds(self, low: Array, high: Array, p: Parameters) -> tuple[Array, Array]:
         return low, high
+
+    def touch(self, slope: Array, p: Parameters) -> Array:
+        return slope
 
 
 FADING_POWER = FadingPower()

@@ -39,6 +39,11 @@ class Table(Family):
             return "increasing"
         return "nondecreasing" if (np.diff(self._y) >= 0).all() and self._d[0] >= 0 and self._d[-1] >= 0 else "other"
 
+    @property
+    def end_slopes(self) -> tuple[float, float]:
+        """The slopes with which the curve goes on below its first and above its last point."""
+        return float(self._d[0]), float(self._d[-1])
+
     @cached_property
     def _cubics(self) -> tuple[Array, Array, Array]:
         """Width of every piece and the coefficients c2, c3 about its left point; c1 is the slope there."""
@@ -69,20 +74,28 @@ class Table(Family):
             # every piece is monotone: besides the ends only points between them can be extreme
             first = np.searchsorted(self._x, low, side="left")
             last = np.searchsorted(self._x, high, side="right") - 1
-            some = first <= last
-            first, last = np.where(some, first, 0), np.where(some, last, 0)
-            least, most = self._point_ranges
-            lo = np.where(some, np.minimum(lo, _range(least, first, last, np.minimum)), lo)
-            hi = np.where(some, np.maximum(hi, _range(most, first, last, np.maximum)), hi)
+            lo, hi = _including(lo, hi, self._point_ranges, first, last)
         # Horner's rule on three coefficients: a few ulp of the largest term, for which the scale of the data stands
         slack = 64 * np.finfo(float).eps * (np.abs(self._y).max() + np.maximum(np.abs(lo), np.abs(hi)))
         return lo - slack, hi + slack
 
     def slope_bounds(self, low: Array, high: Array, p: Parameters) -> tuple[Array, Array]:
-        least, most = self._slope_ranges
-        first = np.searchsorted(self._x, low, side="right")
-        last = np.maximum(first, np.searchsorted(self._x, high, side="left"))
-        lo, hi = _range(least, first, last, np.minimum), _range(most, first, last, np.maximum)
+        """The slope is a parabola in each piece: extreme at the ends, at points between them and at vertices between."""
+        at_low, at_high = self.value(low, p)[1], self.value(high, p)[1]
+        lo, hi = np.minimum(at_low, at_high), np.maximum(at_low, at_high)
+        first = np.searchsorted(self._x, low, side="left")
+        last = np.searchsorted(self._x, high, side="right") - 1
+        lo, hi = _including(lo, hi, self._slope_ranges, first, last)
+        where, top = self._vertices
+        first = np.clip(np.searchsorted(self._x, low, side="right") - 1, 0, len(top) - 1)
+        last = np.clip(np.searchsorted(self._x, high, side="left") - 1, 0, len(top) - 1)
+        lo, hi = _including(lo, hi, self._vertex_ranges, first + 1, last - 1)
+        for k in (first, last):
+            # the vertex is known to rounding only: near the end of the interval it counts as inside
+            near = 1e-9 * (1.0 + np.abs(where[k]))
+            inside = (where[k] > low - near) & (where[k] < high + near)
+            lo = np.where(inside, np.minimum(lo, top[k]), lo)
+            hi = np.where(inside, np.maximum(hi, top[k]), hi)
         slack = 64 * np.finfo(float).eps * self._steepest
         return widen(lo - slack, hi + slack)
 
@@ -92,18 +105,21 @@ class Table(Family):
 
     @cached_property
     def _slope_ranges(self) -> tuple[list[Array], list[Array]]:
-        """Least and greatest slope of every piece (the straight ends first and last), as tables for range queries."""
+        return _levels(self._d, np.minimum), _levels(self._d, np.maximum)
+
+    @cached_property
+    def _vertices(self) -> tuple[Array, Array]:
+        """Where each piece's slope has its vertex (the piece's left point where it has none) and the slope there."""
         h, c2, c3 = self._cubics
-        c1 = self._d[:-1]
-        ends = np.stack([c1, c1 + h * (2 * c2 + 3 * c3 * h)])
         with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
             t = np.where(c3 != 0, -c2 / (3 * c3), -1.0)
-        inside = (t > 0) & (t < h)
-        top = np.where(inside, c1 + np.where(inside, t, 0.0) * (2 * c2 + 3 * c3 * np.where(inside, t, 0.0)), ends[0])
-        every = np.concatenate([ends, top[None]])
-        least = np.concatenate([[self._d[0]], every.min(axis=0), [self._d[-1]]])
-        most = np.concatenate([[self._d[0]], every.max(axis=0), [self._d[-1]]])
-        return _levels(least, np.minimum), _levels(most, np.maximum)
+        t = np.where((t > 0) & (t < h), t, 0.0)
+        return self._x[:-1] + t, self._d[:-1] + t * (2 * c2 + 3 * c3 * t)
+
+    @cached_property
+    def _vertex_ranges(self) -> tuple[list[Array], list[Array]]:
+        top = self._vertices[1]
+        return _levels(top, np.minimum), _levels(top, np.maximum)
 
     def limit(self, old: Array, new: Array, current: Array, rho: Array, p: Parameters) -> Array:
         """Steps no further than the data is wide, so that the straight ends do not throw the iteration off."""
@@ -143,6 +159,19 @@ def _levels(values: Array, pick: np.ufunc) -> list[Array]:
         half = 2 ** (len(out) - 1)
         out.append(pick(out[-1][: len(values) - 2 * half + 1], out[-1][half : len(values) - half + 1]))
     return out
+
+
+def _including(
+    lo: Array, hi: Array, ranges: tuple[list[Array], list[Array]], first: Index, last: Index
+) -> tuple[Array, Array]:
+    """[lo, hi] grown to contain the values first .. last, where there are any."""
+    some = first <= last
+    first, last = np.where(some, first, 0), np.where(some, last, 0)
+    least, most = ranges
+    return (
+        np.where(some, np.minimum(lo, _range(least, first, last, np.minimum)), lo),
+        np.where(some, np.maximum(hi, _range(most, first, last, np.maximum)), hi),
+    )
 
 
 def _range(levels: list[Array], first: Index, last: Index, pick: np.ufunc) -> Array:

@@ -42,6 +42,21 @@ class BranchGroups:
         """An enclosure of the slopes over the boxes [low, high], rounding included."""
         return self._pair(lambda family, pick, p: family.slope_bounds(low[..., pick], high[..., pick], p), low.shape)
 
+    def offset_bounds(self, low: Array, high: Array, slope: Array) -> tuple[Array, Array]:
+        """An enclosure of phi(u) - slope u over the boxes [low, high], rounding included; ``slope`` shaped like them."""
+        return self._pair(
+            lambda family, pick, p: family.offset_bounds(low[..., pick], high[..., pick], slope[..., pick], p),
+            low.shape,
+        )
+
+    def touch(self, slope: Array) -> Array:
+        """About where each phi has this slope (nan: nowhere, or not known)."""
+        out = np.empty((*slope.shape[:-1], self.m))
+        with np.errstate(all="ignore"):
+            for (family, _, p), pick in zip(self.groups, self._picks, strict=True):
+                out[..., pick] = family.touch(slope[..., pick], p)
+        return out
+
     def limit(self, old: Array, new: Array, current: Array, rho: Array) -> Array:
         """Each branch's next controlling value; ``rho`` (>= 0, inf allowed) is the resistance that the branch sees."""
         out: Array | None = None

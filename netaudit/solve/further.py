@@ -5,14 +5,16 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
 from itertools import islice, product
+from math import prod
 
 import numpy as np
 
-from netaudit.devices import KINDS
 from netaudit.devices.base import Array
 from netaudit.solve.certificate import certify
+from netaudit.solve.decide import Decision, branch_names, decide, may_limit
 from netaudit.solve.groups import Group, alone, groups
 from netaudit.solve.linear import DENSE_LIMIT
+from netaudit.solve.newton import newton
 from netaudit.solve.search import search
 from netaudit.solve.settle import Settled, Solver
 from netaudit.solve.solved import Solved
@@ -25,56 +27,84 @@ _SAME_VOLTS = 1e-6
 
 @dataclass(frozen=True)
 class Further:
-    """Points besides the first, and what the search has to say of itself."""
+    """Points besides the first, what is to be said of the search, and whether it proves that there are no others."""
 
     settled: list[Settled]
     said: str
+    proven: bool = False
+
+
+@dataclass(frozen=True)
+class _Choice:
+    """The points of one group, by device and number of branch, whether these are all, and why that is not known."""
+
+    points: list[dict[tuple[str, int], float]]
+    all: bool
+    why: str = ""
+    boxes: int = 0
 
 
 def further_points(solver: Solver, first: Settled) -> Further:
-    """Searches every group that can have several points; the first point's board is where the others set out from."""
-    circuit = solver.system.circuit
-    open_groups = [g for g in groups(circuit) if any(KINDS[d.kind].growth(d) == "other" for d in g.devices)]
-    if not open_groups:
-        return Further([], "")
-    choices: list[list[dict[tuple[str, int], float]]] = []
-    skipped = 0
-    for group in open_groups:
-        found = _group_points(solver, group, first.solved)
-        skipped += found is None
-        if found is not None and len(found) > 1:
-            choices.append(found)
-    said = "; searched from many starts"
-    if skipped:
-        said += f" ({skipped} large group{'s' if skipped > 1 else ''} from one start only)"
-    if not choices:
-        return Further([], said)
-    return Further(_combined(solver, first, choices), said)
+    """Searches every group that can have several points; the first point's board is where the others set out from.
+
+    Stiff supplies cut the board apart.  One that may reach its current limit does not: then the groups are larger, and
+    only where those cannot be decided the smaller ones give their points, without proof.
+    """
+    soft = may_limit(solver, first.solved)
+    found = _over_groups(solver, first, strict=bool(soft))
+    if found.proven or not soft:
+        return found
+    loose = _over_groups(solver, first, strict=False)
+    reason = f"; searched from many starts; not proven to be all ({', '.join(soft)} may reach the current limit)"
+    return Further(loose.settled, reason) if len(loose.settled) >= len(found.settled) else found
 
 
-def _group_points(solver: Solver, group: Group, board: Solved) -> list[dict[tuple[str, int], float]] | None:
-    """Branch values of each point of a group, by device and number of its branch; None: too large to search."""
-    system = System(alone(solver.system.circuit, group))
+def _over_groups(solver: Solver, first: Settled, strict: bool) -> Further:
+    open_groups = [g for g in groups(solver.system.circuit, strict) if not g.settled]
+    choices = [_group_points(solver, group, first.solved, strict) for group in open_groups]
+    reasons = [f"{_named(g)}: {c.why}" for g, c in zip(open_groups, choices, strict=True) if not c.all]
+    several = [c.points for c in choices if len(c.points) > 1]
+    wanted = prod(len(points) for points in several)
+    found = _combined(solver, first, several) if several else []
+    if len(found) + 1 != wanted and not reasons:
+        reasons.append(f"{wanted - len(found) - 1} of {wanted} combinations of the groups' points did not settle")
+    if reasons:
+        return Further(found, f"; searched from many starts; not proven to be all ({'; '.join(reasons)})")
+    boxes = sum(c.boxes for c in choices)
+    counted = f"{len(open_groups)} interacting group{'s' if len(open_groups) != 1 else ''}"
+    return Further(found, f"every other point is excluded by interval search ({counted}, {boxes} boxes)", True)
+
+
+def _named(group: Group) -> str:
+    names = group.awkward
+    return ", ".join(names[:3]) + (f" and {len(names) - 3} more" if len(names) > 3 else "")
+
+
+def _group_points(solver: Solver, group: Group, board: Solved, strict: bool) -> _Choice:
+    """The points of a group: those that the search proves, with the starts only where it does not get through."""
+    system = System(alone(solver.system.circuit, group, strict))
+    names = branch_names(system)
+    place = {name: k for k, name in enumerate(branch_names(solver.system))}
     if system.n > DENSE_LIMIT:
-        return None
+        return _Choice([], False, f"too large to search ({system.n} unknowns)")
     inner = Solver(system)
     temperature = np.array([board.temperature[0, solver.system.index_of[d.name]] for d in system.devices])
     num = system.numbers({}, temperature)
-    names = _branch_names(system)
-    return [dict(zip(names, u.tolist(), strict=True)) for _, u in search(inner, num)]
-
-
-def _branch_names(system: System) -> list[tuple[str, int]]:
-    counts: dict[int, int] = {}
-    out = []
-    for device in system.branch_device.tolist():
-        out.append((system.devices[device].name, counts.get(device, 0)))
-        counts[device] = counts.get(device, 0) + 1
-    return out
+    u0 = np.array([[float(board.u[0, place[name]]) for name in names]])
+    here = newton(system, num, u0, inner.linear)
+    known = [(here.x[0], here.u[0])] if here.converged[0] else []
+    decision = decide(inner, num, known) if known else Decision((), False, "it does not settle alone")
+    found = list(decision.points)
+    if not decision.complete:
+        for x, u in search(inner, num):
+            if not any(_same(x, y) for y, _ in found):
+                found.append((x, u))
+    points = [dict(zip(names, u.tolist(), strict=True)) for _, u in found]
+    return _Choice(points, decision.complete, decision.why, decision.boxes)
 
 
 def _combined(solver: Solver, first: Settled, choices: Sequence[list[dict[tuple[str, int], float]]]) -> list[Settled]:
-    names = _branch_names(solver.system)
+    names = branch_names(solver.system)
     found = [first]
     for picks in islice(product(*choices), _COMBINATIONS):
         values = {key: value for pick in picks for key, value in pick.items()}

@@ -121,7 +121,7 @@ class Interval:
         return Interval(np.minimum(self.low, other.low), np.maximum(self.high, other.high))
 
     def empty(self) -> NDArray[np.bool_]:
-        return np.asarray(self.low > self.high)
+        return np.asarray(np.greater(self.low, self.high))
 
     def within(self, other: Interval) -> NDArray[np.bool_]:
         """Whether every member lies in the interior of ``other``."""

@@ -9,16 +9,16 @@ import numpy as np
 from netaudit.circuit.circuit import Circuit
 from netaudit.solve.certificate import certify
 from netaudit.solve.further import further_points
+from netaudit.solve.persist import Persistence
 from netaudit.solve.point import ModeResult, Point, Uniqueness
 from netaudit.solve.runaway import follow
 from netaudit.solve.settle import Settled, Solver
 from netaudit.solve.solved import Solved
-from netaudit.solve.stability import Stability, stability
+from netaudit.solve.stability import Stability
 from netaudit.solve.structure import ALONE, isolated, structure
 from netaudit.solve.system import System
+from netaudit.solve.warm import hotter_points, moved, thermal_stability
 
-#: unknowns up to which stability is looked at
-_LARGEST_DENSE = 400
 #: no net of a board stands above this
 _LARGEST_VOLTS = 1e7
 
@@ -42,6 +42,7 @@ class Operation:
         self.circuit = circuit
         self.system = System(circuit)
         self.solver = Solver(self.system)
+        self.persistence = Persistence(self.solver)
         self.boards: list[Solved] = []
 
     def result(self) -> ModeResult:
@@ -69,10 +70,17 @@ class Operation:
         every = [settled]
         if known.monotone and not proven and isolated(settled.solved):
             proven, because = True, ALONE
+        excluded = False
         if not proven and not followed.runaway:
             further = further_points(self.solver, settled)
             every = [settled, *further.settled]
-            because += further.said
+            because = further.said if further.proven else because + further.said
+            excluded = further.proven
+        warm = () if followed.runaway else moved(self.solver, settled.solved)
+        if warm:
+            hotter = hotter_points(self.solver, settled)
+            every += hotter
+            because += _at_these_temperatures(warm, bool(hotter), proven or excluded)
         # unstable points last: what is asked for "the" point should get one in which a board can rest
         pairs = sorted(((self._point(one, proven), one.solved) for one in every), key=lambda p: p[0].stable is False)
         self.boards = [board for _, board in pairs]
@@ -81,7 +89,9 @@ class Operation:
             said = "it runs away thermally: shown is the last point before the fold, which is no equilibrium of the whole board"
             points = tuple(replace(p, stable=None, stable_because=said) for p in points)
             proven = False
-        uniqueness: Uniqueness = "proven" if proven else "searched"
+        uniqueness: Uniqueness = "proven" if proven and not warm else "searched"
+        if excluded and not warm:
+            uniqueness = "proven" if len(every) == 1 else "complete"
         return ModeResult(self.circuit, points, uniqueness, because, runaway=followed.runaway)
 
     def _wild(self, board: Solved) -> str | None:
@@ -91,9 +101,9 @@ class Operation:
         return worst if worst is not None and volts[worst] > _LARGEST_VOLTS else None
 
     def _point(self, settled: Settled, proven: bool) -> Point:
-        return make_point(
-            settled.solved.pick(0), settled, self._stability(settled.solved, proven), self._gains(settled)
-        )
+        stable = thermal_stability(None if settled.gain_matrix is None else settled.gain_matrix[0])
+        stable = stable or self._stability(settled.solved, proven)
+        return make_point(settled.solved.pick(0), settled, stable, self._gains(settled))
 
     def _stability(self, board: Solved, proven: bool) -> Stability:
         """Passive circuits need no numbers; others a dense Jacobian, which very large ones do not get."""
@@ -101,10 +111,7 @@ class Operation:
             return Stability(
                 True, "all branches are strictly increasing and the rest is passive: it decays with any capacitances"
             )
-        if self.system.n > _LARGEST_DENSE:
-            return Stability(None, "not decided: the circuit is too large for the test")
-        slope = board.num.branches.value(board.u)[1]
-        return stability(self.system.jacobian(board.num, slope)[0], self.system.is_node)
+        return self.persistence.of(board)
 
     def _gains(self, settled: Settled) -> dict[str, float]:
         """The thermal loop gain R_th dP/dT_j of every heated device, the circuit responding."""
@@ -121,6 +128,15 @@ class Operation:
             f"the largest unbalanced current was {certificate.residual_current:.3g} A on net {certificate.worst_net}"
         )
         return ModeResult(self.circuit, (), "searched", because, failure, certificate.worst_net)
+
+
+def _at_these_temperatures(warm: tuple[str, ...], several: bool, fixed: bool) -> str:
+    """What self-heating leaves open, for the sentence about uniqueness."""
+    names = ", ".join(warm[:3]) + (f" and {len(warm) - 3} more" if len(warm) > 3 else "")
+    if several:
+        return f"; {names} can stand at several temperatures, found from hot starts, not proven to be all"
+    said = "the proof holds at these temperatures" if fixed else "this holds at these temperatures"
+    return f"; {said}: another point with other temperatures of {names} is not excluded"
 
 
 def make_point(solved: Solved, settled: Settled, stable: Stability, gains: dict[str, float]) -> Point:

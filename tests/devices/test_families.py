@@ -46,6 +46,35 @@ def test_bounds_contain_samples_of_value_and_slope(family: Family, p: dict[str, 
     assert (s0 <= slope).all() and (slope <= s1).all()  # noqa: PT018
 
 
+@pytest.mark.parametrize(("family", "p"), FAMILIES)
+@settings(max_examples=60, deadline=None, derandomize=True)
+@given(a=st.floats(-6, 6), b=st.floats(-6, 6), share=st.floats(-0.5, 1.5))
+def test_offset_bounds_contain_samples_off_any_line(
+    family: Family, p: dict[str, float], a: float, b: float, share: float
+) -> None:
+    low, high = np.array(min(a, b)), np.array(max(a, b))
+    at = np.linspace(low, high, 41)
+    value = family.value(at, arrays(p))[0]
+    chord = (value[-1] - value[0]) / (high - low) if high > low else np.array(1.0)
+    slope = share * chord
+    lo, hi = family.offset_bounds(low, high, slope, arrays(p))
+    off = value - slope * at
+    slack = 1e-15 * (np.abs(value) + np.abs(slope * at))
+    assert (lo <= off + slack).all()
+    assert (off - slack <= hi).all()
+
+
+def test_offset_of_a_curve_shrinks_with_the_square_of_the_interval() -> None:
+    widths = []
+    for half in (0.04, 0.02, 0.01):
+        low, high = np.array(1.0 - half), np.array(1.0 + half)
+        v0, v1 = CURVE.value(low, {})[0], CURVE.value(high, {})[0]
+        lo, hi = CURVE.offset_bounds(low, high, (v1 - v0) / (high - low), {})
+        widths.append(float(hi - lo))
+    assert widths[1] < 0.4 * widths[0]
+    assert widths[2] < 0.4 * widths[1]
+
+
 @pytest.mark.parametrize(
     ("i_s", "v", "r"), [(1e-12, 0.0257, 0.0), (1e-9, 0.046, 0.5), (1e-6, 0.0257, 1e9), (1e-15, 0.03, 1e-6)]
 )
