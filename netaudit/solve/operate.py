@@ -19,6 +19,8 @@ from netaudit.solve.structure import ALONE, isolated, structure
 from netaudit.solve.system import System
 from netaudit.solve.warm import hotter_points, moved, thermal_stability
 
+#: thermal loop gain up to which a proof at fixed temperatures is passed on (hot starts look for others all the same)
+_CALM = 0.02
 #: no net of a board stands above this
 _LARGEST_VOLTS = 1e7
 
@@ -77,10 +79,11 @@ class Operation:
             because = further.said if further.proven else because + further.said
             excluded = further.proven
         warm = () if followed.runaway else moved(self.solver, settled.solved)
-        if warm:
-            hotter = hotter_points(self.solver, settled)
-            every += hotter
-            because += _at_these_temperatures(warm, bool(hotter), proven or excluded)
+        hotter = hotter_points(self.solver, settled) if warm else []
+        every += hotter
+        calm = not hotter and float(settled.gain[0]) <= _CALM
+        if warm and (proven or excluded or hotter):
+            because += _at_these_temperatures(warm, bool(hotter), calm)
         # unstable points last: what is asked for "the" point should get one in which a board can rest
         pairs = sorted(((self._point(one, proven), one.solved) for one in every), key=lambda p: p[0].stable is False)
         self.boards = [board for _, board in pairs]
@@ -89,8 +92,8 @@ class Operation:
             said = "it runs away thermally: shown is the last point before the fold, which is no equilibrium of the whole board"
             points = tuple(replace(p, stable=None, stable_because=said) for p in points)
             proven = False
-        uniqueness: Uniqueness = "proven" if proven and not warm else "searched"
-        if excluded and not warm:
+        uniqueness: Uniqueness = "proven" if proven and (calm or not warm) else "searched"
+        if excluded and (calm or not warm):
             uniqueness = "proven" if len(every) == 1 else "complete"
         return ModeResult(self.circuit, points, uniqueness, because, runaway=followed.runaway)
 
@@ -130,13 +133,17 @@ class Operation:
         return ModeResult(self.circuit, (), "searched", because, failure, certificate.worst_net)
 
 
-def _at_these_temperatures(warm: tuple[str, ...], several: bool, fixed: bool) -> str:
+def _at_these_temperatures(warm: tuple[str, ...], several: bool, calm: bool) -> str:
     """What self-heating leaves open, for the sentence about uniqueness."""
-    names = ", ".join(warm[:3]) + (f" and {len(warm) - 3} more" if len(warm) > 3 else "")
     if several:
-        return f"; {names} can stand at several temperatures, found from hot starts, not proven to be all"
-    said = "the proof holds at these temperatures" if fixed else "this holds at these temperatures"
-    return f"; {said}: another point with other temperatures of {names} is not excluded"
+        return f"; {_listed(warm)} can stand at several temperatures, found from hot starts, not proven to be all"
+    if calm:
+        return f"; this speaks of the temperatures solved, from hot starts no others of {_listed(warm)} were found"
+    return f"; the proof speaks of the temperatures solved: warming feeds itself, others of {_listed(warm)} are not excluded"
+
+
+def _listed(names: tuple[str, ...]) -> str:
+    return ", ".join(names[:3]) + (f" and {len(names) - 3} more" if len(names) > 3 else "")
 
 
 def make_point(solved: Solved, settled: Settled, stable: Stability, gains: dict[str, float]) -> Point:

@@ -2,7 +2,7 @@
 
 The proofs hold at fixed temperatures.  They hold for the whole board where no heated part's law moves with its
 temperature; elsewhere other temperatures may go with another point (a thermistor that heats itself), which is looked for
-from hot starts wherever the power of a part rises with its temperature.
+from hot starts.
 """
 
 from __future__ import annotations
@@ -18,9 +18,7 @@ from netaudit.solve.solved import Solved
 from netaudit.solve.stability import Stability
 
 #: kelvins above ambient from which hot points are looked for
-_HOTTER = (20.0, 50.0, 100.0, 180.0, 300.0, 500.0)
-#: loop gain below which no second temperature is looked for
-_GAIN = 0.05
+_HOTTER = (30.0, 90.0, 200.0, 450.0)
 #: points whose temperatures agree to this are the same, K
 _SAME = 1e-3
 
@@ -52,9 +50,7 @@ def _differs(a: Array, b: Array) -> NDArray[np.bool_]:
 
 
 def hotter_points(solver: Solver, first: Settled) -> list[Settled]:
-    """Further points at other temperatures, found from hot starts; none are looked for where heating calms itself."""
-    if not solver.heat.any or not float(first.gain[0]) > _GAIN:
-        return []
+    """Further points at other temperatures, found from hot starts."""
     board = first.solved
     job = solver.job(count=len(_HOTTER))
     t0 = np.repeat(board.temperature, len(_HOTTER), axis=0)
