@@ -17,6 +17,7 @@ from netaudit.audit.package import package_devices, package_tasks
 from netaudit.audit.part_rows import part_rows
 from netaudit.audit.points import point_tasks
 from netaudit.audit.records import Audit, SampledStress, Stress
+from netaudit.audit.several import several
 from netaudit.audit.statistics import Plan, sample
 from netaudit.audit.stress import Watched, beyond, corner_text, findings_of, stress_of, watched
 from netaudit.audit.tasks import Task
@@ -189,7 +190,7 @@ def _audit_mode(mode: _Mode, workers: Workers) -> ModeAudit:
     if not result.points:
         out.findings.append(_none_found(result))
         return out
-    out.findings += _several(result)
+    out.findings += several(operation, result)
     tasks = [
         *point_tasks(operation.circuit, mode.known),
         *expectation_tasks(board, operation.circuit, frozenset(operation.system.index_of)),
@@ -313,20 +314,3 @@ def _none_found(result: ModeResult) -> Finding:
         file=place.file if place is not None else None,
         line=place.line if place is not None else None,
     )
-
-
-def _several(result: ModeResult) -> Iterable[Finding]:
-    kept = [p for p in result.points if p.stable is not False]
-    if len(kept) > 1:
-        place = result.circuit.devices[0].place
-        yield Finding(
-            "point/several",
-            "warning",
-            f"mode {result.mode} can settle in {len(kept)} operating points; each one is audited "
-            f"({result.because}): make sure that it starts in the right one",
-            mode=result.mode,
-            value=float(len(kept)),
-            unit="1",
-            file=place.file,
-            line=place.line,
-        )

@@ -72,7 +72,11 @@ def _over_groups(solver: Solver, first: Settled, strict: bool) -> Further:
         return Further(found, f"; searched from many starts; not proven to be all ({'; '.join(reasons)})")
     boxes = sum(c.boxes for c in choices)
     counted = f"{len(open_groups)} interacting group{'s' if len(open_groups) != 1 else ''}"
-    return Further(found, f"every other point is excluded by interval search ({counted}, {boxes} boxes)", True)
+    return Further(
+        found,
+        f"every other point is excluded by interval search ({counted}, {boxes} box{'es' if boxes != 1 else ''})",
+        True,
+    )
 
 
 def _named(group: Group) -> str:

@@ -79,7 +79,7 @@ class Operation:
             because = further.said if further.proven else because + further.said
             excluded = further.proven
         warm = () if followed.runaway else moved(self.solver, settled.solved)
-        hotter = hotter_points(self.solver, settled) if warm else []
+        hotter = hotter_points(self.solver, every) if warm else []
         every += hotter
         calm = not hotter and float(settled.gain[0]) <= _CALM
         if warm and (proven or excluded or hotter):

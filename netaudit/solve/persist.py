@@ -52,6 +52,7 @@ class Persistence:
         temperature = np.array([board.temperature[0, whole.index_of[d.name]] for d in system.devices])
         place = {name: k for k, name in enumerate(branch_names(whole))}
         u = np.array([board.u[0, place[name]] for name in branch_names(system)])
-        num = system.numbers({}, temperature)
+        own = {k: float(np.reshape(v, -1)[0]) for k, v in board.overrides.items() if k[0] in system.index_of}
+        num = system.numbers(own, temperature)
         slope = num.branches.value(u)[1]
         return stability(system.jacobian(num, slope), system.is_node)

@@ -7,6 +7,7 @@ from hot starts.
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import replace
 
 import numpy as np
@@ -19,8 +20,10 @@ from netaudit.solve.stability import Stability
 
 #: kelvins above ambient from which hot points are looked for
 _HOTTER = (30.0, 90.0, 200.0, 450.0)
-#: points whose temperatures agree to this are the same, K
-_SAME = 1e-3
+#: points whose voltages agree to this (V, and relative) and whose temperatures agree to a hundred times this (K) are one
+_SAME = 1e-5
+#: beyond this no law of a part has a meaning, degC
+_HOTTEST = 2900.0
 
 
 def moved(solver: Solver, board: Solved) -> tuple[str, ...]:
@@ -49,25 +52,30 @@ def _differs(a: Array, b: Array) -> NDArray[np.bool_]:
     return np.asarray(np.atleast_2d(a)[0] != np.atleast_2d(b)[0])
 
 
-def hotter_points(solver: Solver, first: Settled) -> list[Settled]:
-    """Further points at other temperatures, found from hot starts."""
-    board = first.solved
+def hotter_points(solver: Solver, known: Sequence[Settled]) -> list[Settled]:
+    """Further points at other temperatures, found from hot starts out of the first of those known."""
+    board = known[0].solved
     job = solver.job(count=len(_HOTTER))
     t0 = np.repeat(board.temperature, len(_HOTTER), axis=0)
     t0[:, solver.heat.devices] += np.array(_HOTTER)[:, None]
     u0 = np.repeat(board.u, len(_HOTTER), axis=0)
     trial = solver.settle(replace(job, u0=u0, t0=t0), remedies=False)
-    found: list[Array] = [board.temperature[0]]
+    found: list[tuple[Array, Array]] = [(k.solved.x[0], k.solved.temperature[0]) for k in known]
     out = []
     for k in np.flatnonzero(trial.converged):
-        t = trial.solved.temperature[k]
-        if any(np.abs(t - old).max() < _SAME for old in found) or float(t.max()) > 2900.0:
+        x, t = trial.solved.x[k], trial.solved.temperature[k]
+        if any(_same(x, t, *old) for old in found) or float(t.max()) > _HOTTEST:
             continue
         again = solver.settle(replace(solver.job(), u0=trial.solved.u[k][None], t0=t[None]), remedies=False)
         if again.converged[0]:
-            found.append(t)
+            found.append((x, t))
             out.append(again)
     return out
+
+
+def _same(x: Array, t: Array, y: Array, u: Array) -> bool:
+    volts = np.abs(x - y) <= _SAME * (1.0 + np.maximum(np.abs(x), np.abs(y)))
+    return bool(volts.all() and (np.abs(t - u) <= _SAME * 100).all())
 
 
 def thermal_stability(gain: Array | None) -> Stability | None:

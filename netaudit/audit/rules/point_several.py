@@ -1,6 +1,8 @@
 """More than one operating point that can persist.
 
-The circuit can settle in several ways (a latch, a Schmitt trigger).  Each point that is not proven unstable is audited.
+The circuit can settle in several ways (a latch, a Schmitt trigger, a constant-power load behind a cable).  Each point that
+is not proven unstable is audited.  The finding names the currents that tell the points apart and says which of them the
+board reaches as its supplies rise from zero, together or one after the others, and whether these are all.
 
 Mend: make sure that it starts in the right one.
 
