@@ -21,7 +21,7 @@ from netaudit.solve.system import Numbers, System
 from netaudit.solve.tighten import Bounds, Dense, tighten
 
 #: regulators that are told apart into both of their cases
-_MOST = 4
+_MOST = 3
 
 
 @dataclass(frozen=True)

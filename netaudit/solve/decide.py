@@ -12,7 +12,6 @@ from netaudit.devices.base import Array
 from netaudit.solve.cases import Region, region
 from netaudit.solve.groups import alone, groups, limited
 from netaudit.solve.interval import Interval
-from netaudit.solve.linear import DENSE_LIMIT
 from netaudit.solve.newton import Effort, newton
 from netaudit.solve.passive import span
 from netaudit.solve.prune import prune
@@ -24,13 +23,13 @@ from netaudit.solve.tighten import Dense, dense
 from netaudit.solve.verify import Verified, verify
 
 #: work that a search may take: boxes times distinct branch values squared times branches
-_WORK = 1.5e8
+_WORK = 2e7
 #: fewest and most boxes that are granted
-_LEAST_BOXES, _MOST_BOXES = 2_000, 150_000
+_LEAST_BOXES, _MOST_BOXES = 300, 60_000
 #: boxes granted to the question whether a supply reaches its limit
-_LIMIT_BOXES = 1_000
-#: distinct branch values beyond which the search is not begun
-_LARGEST = 40
+_LIMIT_BOXES = 300
+#: branches, and unknowns, beyond which the search is not begun
+_LARGEST, _UNKNOWNS = 36, 80
 
 
 @dataclass(frozen=True)
@@ -52,6 +51,8 @@ def decide(solver: Solver, num: Numbers, found: Sequence[tuple[Array, Array]]) -
     circuit = dense(solver.system, num)
     if not circuit.m:
         return Decision(given, len(given) == 1)
+    if circuit.m > _LARGEST or circuit.n > _UNKNOWNS:
+        return Decision(given, False, f"{circuit.m} branches interact")
     within = region(solver.system, num, circuit, limits)
     if not within.bounded:
         return Decision(given, False, "the circuit leaves a current without a bound")
@@ -59,8 +60,8 @@ def decide(solver: Solver, num: Numbers, found: Sequence[tuple[Array, Array]]) -
     if any(p is None for p in proven):
         return Decision(given, False, "a point lies at a corner of a characteristic or next to a fold")
     reduced = reduce(circuit, circuit.branches.value(given[0][1])[1], within.x_max)
-    if reduced is None or reduced.d > _LARGEST:
-        return Decision(given, False, f"{circuit.m} branches interact")
+    if reduced is None:
+        return Decision(given, False, "its equations are singular")
     return _searched(solver, num, circuit, reduced, within, [p for p in proven if p is not None])
 
 
@@ -99,7 +100,7 @@ def _below_limit(solver: Solver, board: Solved, circuit: Circuit, name: str) -> 
     """Whether the circuit has no solution in which the supply's ramp is on."""
     limits = span(circuit)
     system = System(circuit)
-    if limits.why or system.n > DENSE_LIMIT:
+    if limits.why or system.m > _LARGEST or system.n > _UNKNOWNS:
         return False
     temperature = np.array([board.temperature[0, solver.system.index_of[d.name]] for d in system.devices])
     num = system.numbers({}, temperature)
@@ -116,7 +117,7 @@ def _below_limit(solver: Solver, board: Solved, circuit: Circuit, name: str) -> 
     place = {name: k for k, name in enumerate(branch_names(solver.system))}
     u = np.array([float(board.u[0, place[name]]) for name in branch_names(system)])
     reduced = reduce(arrays, arrays.branches.value(u)[1], within.x_max)
-    if reduced is None or reduced.d > _LARGEST:
+    if reduced is None:
         return False
     boxes = [reduced.gather(u) for u in within.boxes]
     return prune(reduced, boxes, [], lambda _: None, _LIMIT_BOXES).undecided == 0

@@ -15,7 +15,7 @@ from netaudit.solve.decide import Decision, branch_names, decide, may_limit
 from netaudit.solve.groups import Group, alone, groups
 from netaudit.solve.linear import DENSE_LIMIT
 from netaudit.solve.newton import newton
-from netaudit.solve.search import search
+from netaudit.solve.search import WILDEST, search
 from netaudit.solve.settle import Settled, Solver
 from netaudit.solve.solved import Solved
 from netaudit.solve.system import System
@@ -56,7 +56,7 @@ def further_points(solver: Solver, first: Settled) -> Further:
         return found
     loose = _over_groups(solver, first, strict=False)
     reason = f"; searched from many starts; not proven to be all ({', '.join(soft)} may reach the current limit)"
-    return Further(loose.settled, reason) if len(loose.settled) >= len(found.settled) else found
+    return Further(loose.settled, reason)
 
 
 def _over_groups(solver: Solver, first: Settled, strict: bool) -> Further:
@@ -99,7 +99,8 @@ def _group_points(solver: Solver, group: Group, board: Solved, strict: bool) -> 
     known = [(here.x[0], here.u[0])] if here.converged[0] else []
     decision = decide(inner, num, known) if known else Decision((), False, "it does not settle alone")
     found = list(decision.points)
-    if not decision.complete:
+    # soft supplies make the groups larger: they are searched from starts only with stiff ones
+    if not decision.complete and not strict:
         for x, u in search(inner, num):
             if not any(_same(x, y) for y, _ in found):
                 found.append((x, u))
@@ -115,7 +116,8 @@ def _combined(solver: Solver, first: Settled, choices: Sequence[list[dict[tuple[
         u0 = np.array([[values.get(name, float(first.solved.u[0, k])) for k, name in enumerate(names)]])
         job = replace(solver.job(), u0=u0, t0=first.solved.temperature)
         trial = solver.settle(job, remedies=False)
-        if not trial.converged[0] or not certify(trial.solved.pick(0)).holds:
+        wild = float(np.abs(trial.solved.x[0][solver.system.is_node]).max(initial=0.0)) > WILDEST
+        if wild or not trial.converged[0] or not certify(trial.solved.pick(0)).holds:
             continue
         if not any(_same(trial.solved.x[0], old.solved.x[0]) for old in found):
             found.append(trial)

@@ -12,6 +12,7 @@ from netaudit.solve.further import further_points
 from netaudit.solve.persist import Persistence
 from netaudit.solve.point import ModeResult, Point, Uniqueness
 from netaudit.solve.runaway import follow
+from netaudit.solve.search import WILDEST
 from netaudit.solve.settle import Settled, Solver
 from netaudit.solve.solved import Solved
 from netaudit.solve.stability import Stability
@@ -21,8 +22,6 @@ from netaudit.solve.warm import hotter_points, moved, thermal_stability
 
 #: thermal loop gain up to which a proof at fixed temperatures is passed on (hot starts look for others all the same)
 _CALM = 0.02
-#: no net of a board stands above this
-_LARGEST_VOLTS = 1e7
 
 
 def operate(circuit: Circuit) -> ModeResult:
@@ -58,7 +57,7 @@ class Operation:
         wild = self._wild(settled.solved.pick(0))
         if wild is not None:
             failure = (
-                f"net {wild} would have to rise beyond {_LARGEST_VOLTS:.0e} V: a current that is forced into it has no "
+                f"net {wild} would have to rise beyond {WILDEST:.0e} V: a current that is forced into it has no "
                 "way back but leakage"
             )
             return ModeResult(self.circuit, (), "searched", because, failure, wild)
@@ -101,7 +100,7 @@ class Operation:
         """A net whose voltage has no physical meaning, where a source pushes its current through leakage alone."""
         volts = {net: abs(float(board.net(net))) for net in self.circuit.nets if net in self.system.net_of}
         worst = max(volts, key=lambda net: volts[net], default=None)
-        return worst if worst is not None and volts[worst] > _LARGEST_VOLTS else None
+        return worst if worst is not None and volts[worst] > WILDEST else None
 
     def _point(self, settled: Settled, proven: bool) -> Point:
         stable = thermal_stability(None if settled.gain_matrix is None else settled.gain_matrix[0])

@@ -185,3 +185,14 @@ def test_groups_are_cut_at_stiff_supplies_and_not_joined_by_connectors() -> None
     found = groups(circuit)
     assert [len(g.devices) for g in found] == [6, 6]
     assert System(alone(circuit, found[0])).m == 4
+
+
+def test_three_regulators_behind_one_diode_have_one_point() -> None:
+    """Newton also ends where a net would stand at 1e17 V and all rows round to zero: that is no point."""
+    lines = ["PS1 supply 24V +:V -:GND", "F1 fuse 5A R=10mohm 1:V 2:VF", "D0 diode I_S=1nA A:VF K:VB"]
+    for k in range(3):
+        lines.append(f"U{k} regulator 5V limit=1A I_Q=5mA V_drop=1V IN:VB OUT:O{k} GND:GND")
+        lines.append(f"R{k} resistor 330R 1:O{k} 2:L{k}")
+        lines.append(f"D{k + 1} led I_S=1e-18A n=2 A:L{k} K:GND")
+    result = solved("\n".join(lines) + "\n")
+    assert len(result.points) == 1
