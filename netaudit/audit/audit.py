@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterable, Iterator, Mapping, Sequence
 from contextlib import suppress
 from dataclasses import dataclass, field, replace
@@ -16,6 +17,7 @@ from netaudit.audit.lint import ordered, structural
 from netaudit.audit.package import package_devices, package_tasks
 from netaudit.audit.part_rows import part_rows
 from netaudit.audit.points import point_tasks
+from netaudit.audit.proof import prove
 from netaudit.audit.records import Audit, SampledStress, Stress
 from netaudit.audit.several import several
 from netaudit.audit.statistics import Plan, sample
@@ -246,8 +248,8 @@ def _explore(
     out.cut |= explorer.cut
     nominal: Solved = explorer.boards[0].pick(0)
     left = iter(extremes)
-    for item, some in zip(items, objectives, strict=True):
-        own = [next(left) for _ in some]
+    found = [[next(left) for _ in some] for some in objectives]
+    for item, own in zip(items, prove(explorer, items, found), strict=True):
         out.stresses.append(stress_of(item, own, nominal, out.result.mode, variant))
     for task in tasks:
         out.findings += task.verdict(next(left), nominal)
@@ -271,13 +273,28 @@ def _none_at(out: ModeAudit, corner: Mapping[str, float], variant: str | None) -
 
 
 def _worst_of(stresses: Sequence[Stress]) -> list[Stress]:
-    """One entry for each device, quantity, pin and variant: the worst of several operating points and directions."""
+    """One entry for each device, quantity, pin and variant: the worst of several operating points and directions,
+    proven as far as all of them are."""
     best: dict[tuple[str, str, str | None, str | None], Stress] = {}
     for s in stresses:
         key = (s.device, s.quantity, s.pin, s.variant)
-        if key not in best or _badness(s) > _badness(best[key]):
+        if key not in best:
             best[key] = s
+            continue
+        worse, other = (s, best[key]) if _badness(s) > _badness(best[key]) else (best[key], s)
+        best[key] = _weaker(worse, other)
     return list(best.values())
+
+
+def _weaker(worse: Stress, other: Stress) -> Stress:
+    """The worse of two with the weaker proof of both."""
+    if "checked" in (worse.proof, other.proof) or worse.direction != other.direction:
+        return worse if worse.proof == "checked" else replace(worse, proof="checked", bound=None)
+    bounds = [s.bound * s.direction for s in (worse, other) if s.bound is not None]
+    most = max(bounds, default=-math.inf)
+    if most <= worse.worst * worse.direction:
+        return worse if worse.proof == "proven" else replace(worse, bound=worse.worst)
+    return replace(worse, proof="bounded", bound=most * worse.direction)
 
 
 def _badness(s: Stress) -> tuple[bool, float, float]:

@@ -80,17 +80,25 @@ def stress_of(item: Watched, extremes: Sequence[Extreme], nominal: Solved, mode:
     now = max(now, 0.0) if item.check.unit != "degC" else now
     rating = limit = ratio = None
     row, document, symbol = "", "", ""
+    # the bound of a ratio, as a stress at the limit of the worst corner
+    bound = worst.bound
     if not item.limit.missing:
         rating, limit = float(item.limit.rating(view)), float(item.limit.limit(view))
         ratio = at_worst / limit if limit > 0 else None
+        if bound is not None and item.check.quantity != "reverse-polarity":
+            bound *= limit
         found = item.limit.row
         row, document = (str(found), found.document) if found is not None else ("", "")
         symbol = next(iter((*item.limit.symbols, *item.check.symbols)), "")
+    proof = worst.proof
+    if proof == "bounded" and bound is not None and bound <= at_worst:
+        # what is bounded below zero is no stress at all
+        proof, bound = "proven", None
     rated = item.device.ratings.get(symbol)
     way = item.direction
     return Stress(
         item.device.name, item.check.quantity, item.check.unit, way * now, way * at_worst, _times(rating, way),
-        _times(limit, way), ratio, mode, worst.corner, worst.proof, worst.bound, False, variant, symbol, row, document,
+        _times(limit, way), ratio, mode, worst.corner, proof, _times(bound, way), False, variant, symbol, row, document,
         rated.origin if rated is not None else "", item.pin, way,
     )  # fmt: skip
 

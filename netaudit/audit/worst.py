@@ -124,6 +124,14 @@ class Explorer:
         self._gradients(objectives, sorted(set(best.tolist())))
         return [self._extreme(table, int(best[k]), k) for k in range(len(objectives))]
 
+    def visit(self, rows: Sequence[Array]) -> None:
+        """Solves further rows of values; those without an operating point stay unknown."""
+        self._solve(rows, remedies=False)
+
+    def board(self, row: int) -> Solved:
+        """The board of a row that was solved."""
+        return self._board(row)
+
     def _search(self, objectives: Sequence[Objective]) -> None:
         if len(self.spans) <= _ALL_VERTICES:
             self._solve([np.array(v) for v in product(*zip(self.low, self.high, strict=True))])
