@@ -18,14 +18,15 @@ import numpy as np
 from netaudit.audit.stress import Watched
 from netaudit.audit.worst import Explorer, Extreme
 from netaudit.devices.base import Array
-from netaudit.solve.box import Boxes, Outputs
+from netaudit.solve.box import Boxes
+from netaudit.solve.enclosure import Outputs
 from netaudit.solve.interval import Interval, total
 from netaudit.solve.terms import Unsupported
 
 #: unknowns and varying values up to which a proof is tried, and boxes enclosed at once
 _UNKNOWNS, _VALUES, _AT_ONCE = 160, 64, 64
 #: halvings of a box whose signs stay open; boxes enclosed for one operating point at most, and multiplications
-_DEPTH, _BUDGET, _WORK = 2, 800, 1.5e8
+_DEPTH, _BUDGET, _WORK = 2, 600, 8e7
 #: stresses that share a box in one enclosure
 _TOGETHER = 8
 #: an influence or a gap below this share of the stress is none

@@ -271,9 +271,8 @@ def _ratios(
         rows = np.repeat(np.stack([low, middle, high]), 3, axis=0)
         rows[:, k] = np.tile(inside, 3)
         arrays = _arrays(_numbers(solver, nominal, spans, rows))
-        at = np.stack([np.broadcast_to(arrays[a][..., e], (9,)) for a, e in entries.first], axis=-1).reshape(
-            3, 3, width
-        )
+        some = [np.broadcast_to(arrays[a][..., e], (9,)) for a, e in entries.first]
+        at = np.array(some).reshape(width, 9).T.reshape(3, 3, width)
         whole = at[:, 2] - at[:, 0]
         change[k] = (whole != 0.0).any(axis=0)
         mine = np.flatnonzero(change[k])
