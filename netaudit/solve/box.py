@@ -108,7 +108,7 @@ class Boxes:
         """How much each value moves the branches in thermal voltages over its span, at the nominal point."""
         system, start = self.system, self.nominal
         rows = np.array([[v.quantity.nominal for v in self.spans]])
-        near = moved(self.solver, start, self.spans, rows, list(range(len(self.spans))))
+        near = moved(self.solver, start, self.spans, rows, np.eye(len(self.spans), dtype=bool))
         return np.asarray(np.abs(near.u - start.u).sum(axis=-1)) if system.m else np.ones(len(self.spans))
 
     def numbers(self, rows: Array) -> Numbers:
