@@ -29,7 +29,7 @@ Objective = Callable[[Solved], Array]
 #: a gain below this share of the value is rounding, not an influence
 _NEGLIGIBLE = 1e-12
 #: with at most this many values all vertices are solved besides those that sensitivities point to
-_ALL_VERTICES = 6
+_ALL_VERTICES = 8
 _ROUNDS = 8
 #: values along which one quantity is searched inside its range in each round
 _INSIDE = 4
