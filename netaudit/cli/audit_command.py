@@ -68,7 +68,7 @@ def run(options: argparse.Namespace) -> int:
     jobs = jobs_of(options, files)
     live = any(report.format.live for report in reports)
     results: list[BoardResult] = []
-    with at_work(workers_of(options, files), options.cluster) as workers:
+    with at_work(workers_of(options, files[0].project), options.cluster) as workers:
         for result in run_jobs(jobs, cache_of(options, files), live, workers):
             results.append(result)
             if result.audit is None:

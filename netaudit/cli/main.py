@@ -14,6 +14,7 @@ from typing import NoReturn
 from netaudit import __version__
 from netaudit.cli import (
     audit_command,
+    compare_command,
     convert_command,
     explain_command,
     fit_command,
@@ -32,6 +33,7 @@ examples:
   netaudit solve board.netlist           operating points at nominal values
   netaudit audit board.netlist           every part against its ratings, worst case
   netaudit audit --policy cautious --format json *.netlist
+  netaudit compare origin/main .         only what this change made worse
   netaudit explain stress/power          what a rule finds, and why
 
 exit status: 0 nothing at or above --fail-on, 1 something is, 2 the command, a file or a netlist is wrong,
@@ -42,6 +44,7 @@ _COMMANDS = (
     lint_command,
     solve_command,
     audit_command,
+    compare_command,
     size_command,
     explain_command,
     fit_command,

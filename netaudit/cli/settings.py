@@ -10,7 +10,6 @@ from typing import TYPE_CHECKING, Any
 
 from netaudit.failure import InputError
 from netaudit.finding import Level
-from netaudit.parts.policy_file import policy_files
 from netaudit.project.globs import named_files
 from netaudit.project.project import FILE_NAME, Project
 from netaudit.project.read import find_project, project_at
@@ -80,7 +79,7 @@ def jobs_of(options: argparse.Namespace, files: Sequence[Target]) -> tuple[Job, 
         jobs.append(
             Job(
                 target.path, target.root, tuple(options.changes), policy, nominal(options, project),
-                tuple(options.modes), plan_of(options, project), tables[name], policy_files(policy), verdict,
+                tuple(options.modes), plan_of(options, project), tables[name], verdict=verdict,
             )
         )  # fmt: skip
     return tuple(jobs)
@@ -112,9 +111,8 @@ def cache_of(options: argparse.Namespace, files: Sequence[Target]) -> Cache | No
     return Cache(project.path(project.cache)) if project is not None and project.cache is not None else None
 
 
-def workers_of(options: argparse.Namespace, files: Sequence[Target]) -> int:
+def workers_of(options: argparse.Namespace, project: Project | None) -> int:
     """How many boards at a time; 0 stands for every processor."""
-    project = files[0].project if files else None
     return count_of(stated(options.workers, project, lambda p: p.workers, 1))
 
 

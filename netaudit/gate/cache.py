@@ -21,6 +21,7 @@ from netaudit.audit.records import Audit
 from netaudit.failure import InputError
 from netaudit.gate.codec import from_plain
 from netaudit.gate.job import Job
+from netaudit.parts.policy_file import policy_files
 from netaudit.project.project import FILE_NAME
 from netaudit.syntax.paths import project_root
 
@@ -50,7 +51,7 @@ class Cache:
         """The audit of a job of which nothing has changed; None when it must be made."""
         key = _key(job)
         for files, name in self._lists(key):
-            if all(self._digest(path) == digest for path, digest in files.items()):
+            if all(self._digest(_real(job, path)) == digest for path, digest in files.items()):
                 with contextlib.suppress(OSError, ValueError, TypeError, KeyError, IndexError, AttributeError):
                     return from_plain(json.loads(Path(self.folder, name).read_bytes()))
         return None
@@ -58,12 +59,11 @@ class Cache:
     def keep(self, job: Job, plain: Any, files: Mapping[str, str]) -> None:
         """Keeps an audit (as plain values) with the files that it was made from."""
         key = _key(job)
-        every = {**files, **{path: self._digest(path) or "" for path in job.other_files}}
-        listed = json.dumps(every, sort_keys=True)
+        listed = json.dumps(dict(files), sort_keys=True)
         name = f"{key}-{hashlib.sha256(listed.encode()).hexdigest()[:16]}.json"
         lists = [(f, n) for f, n in self._lists(key) if n != name]
         self._write(name, json.dumps(plain, separators=(",", ":")))
-        self._write(f"{key}.json", json.dumps([[every, name], *([f, n] for f, n in lists[: _MOST - 1])]))
+        self._write(f"{key}.json", json.dumps([[dict(files), name], *([f, n] for f, n in lists[: _MOST - 1])]))
         for _, old in lists[_MOST - 1 :]:
             with contextlib.suppress(OSError):
                 os.unlink(os.path.join(self.folder, old))
@@ -114,10 +114,20 @@ def digest(path: str) -> str | None:
 def _key(job: Job) -> str:
     """What an audit depends on besides the content of files."""
     said = (
-        __version__, program(), job.path, _root(job), job.tables, job.changes, job.policy, job.nominal, job.modes,
+        __version__, program(), job.name, _root(job), job.tables, job.changes, _policy(job), job.nominal, job.modes,
         job.plan,
     )  # fmt: skip
     return hashlib.sha256(repr(said).encode()).hexdigest()[:32]
+
+
+def _policy(job: Job) -> tuple[str | None, ...]:
+    """A shipped policy by its name, one of one's own by what it says."""
+    return (Path(job.policy).stem, *(digest(path) for path in policy_files(job.policy)))
+
+
+def _real(job: Job, path: str) -> str:
+    """Where a file lies that reports show without the first prefix, that of the job's own folder."""
+    return f"{job.prefixes[0]}{path}" if job.prefixes and not os.path.isabs(path) else path
 
 
 def _root(job: Job) -> tuple[str, bool]:

@@ -37,6 +37,15 @@ def from_plain(data: Any) -> Audit:
     return found
 
 
+def renamed(data: Any, shown: Callable[[str], str]) -> Any:
+    """Plain values with every text, those of keys as well, as it is to be shown."""
+    if isinstance(data, str):
+        return shown(data)
+    if isinstance(data, dict):
+        return {shown(key): renamed(v, shown) for key, v in data.items()}
+    return [renamed(v, shown) for v in data] if isinstance(data, list) else data
+
+
 def _outline(circuit: Circuit) -> Circuit:
     return Circuit(circuit.mode, (), (), circuit.grounds, circuit.ambient)
 

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import datetime
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 
 from netaudit.audit.batch import BoardResult
 from netaudit.audit.records import Audit
@@ -34,7 +34,9 @@ class Verdict:
 class Job:
     """A netlist and how to audit it; ``policy`` is a name or a file, ``modes`` empty for all.
 
-    ``tables`` are the project's part tables, ``other_files`` what is read besides (a policy's file).
+    ``tables`` are the project's part tables.  ``prefixes`` are folders that no report shall name (those into which a
+    revision's files were put, each with a separator at its end): names begin behind them.  The first is that of the job's
+    own folder, empty for the current one.
     """
 
     path: str
@@ -45,8 +47,19 @@ class Job:
     modes: tuple[str, ...] = ()
     plan: Plan | None = None
     tables: tuple[str, ...] = ()
-    other_files: tuple[str, ...] = ()
+    prefixes: tuple[str, ...] = ()
     verdict: Verdict = field(default_factory=Verdict)
+
+    def shown(self, text: str) -> str:
+        """A text without the prefixes."""
+        for prefix in filter(None, self.prefixes):
+            text = text.replace(prefix, "")
+        return text
+
+    @property
+    def name(self) -> str:
+        """The netlist's name in reports."""
+        return self.shown(self.path)
 
 
 def solve(job: Job, workers: Workers = IN_PROCESS) -> Audit:
@@ -63,15 +76,16 @@ def judged(job: Job, found: Audit) -> BoardResult:
     whole = not job.modes and not job.changes and not job.nominal
     audit = waived_audit(found, verdict.waivers, verdict.board, verdict.today, whole)
     failed = audit.fails(verdict.fail_on, verdict.require_complete)
-    return BoardResult(job.path, audit, failed, fail_on=verdict.fail_on)
+    return BoardResult(job.name, audit, failed, fail_on=verdict.fail_on)
 
 
 def refused(job: Job, error: InputError) -> BoardResult:
     """What stands for a board that could not be read."""
-    return BoardResult(job.path, None, True, str(error), error.place, job.verdict.fail_on)
+    place = replace(error.place, file=job.shown(error.place.file)) if error.place is not None else None
+    return BoardResult(job.name, None, True, job.shown(str(error)), place, job.verdict.fail_on)
 
 
 def unreached(job: Job) -> BoardResult:
     """What stands for a board that an interruption left unaudited."""
-    said = f"{job.path}: not audited: interrupted before its turn"
-    return BoardResult(job.path, None, True, said, None, job.verdict.fail_on, True)
+    said = f"{job.name}: not audited: interrupted before its turn"
+    return BoardResult(job.name, None, True, said, None, job.verdict.fail_on, True)

@@ -35,7 +35,8 @@ class _Case:
 
 def render(batch: Batch) -> str:
     """The document."""
-    boards = [*batch.boards, *([_project(batch)] if batch.findings else [])]
+    own = batch.comparison.own if batch.comparison is not None else ()
+    boards = [*batch.boards, *([_project((*batch.findings, *own), batch)] if batch.findings or own else [])]
     suites = [_suite(board, number, batch) for number, board in enumerate(boards)]
     counts = {name: sum(s[0][name] for s in suites) for name in ("tests", "failures", "errors")}
     lines = ['<?xml version="1.0" encoding="UTF-8"?>', f"<testsuites{_attributes({'name': 'netaudit', **counts})}>"]
@@ -44,16 +45,16 @@ def render(batch: Batch) -> str:
     return "\n".join([*lines, "</testsuites>"]) + "\n"
 
 
-def _project(batch: Batch) -> BoardResult:
+def _project(findings: tuple[Finding, ...], batch: Batch) -> BoardResult:
     """Findings that belong to no board stand in a suite of their own."""
-    empty = Audit(Board("project", "", (), (), True), "", (), batch.findings, (), Coverage(0, 0, 0, (), 0, 0, 0), True)
+    empty = Audit(Board("project", "", (), (), True), "", (), findings, (), Coverage(0, 0, 0, (), 0, 0, 0), True)
     return BoardResult("project", empty, batch.failed, fail_on=batch.boards[0].fail_on if batch.boards else "error")
 
 
 def _suite(board: BoardResult, number: int, batch: Batch) -> tuple[Mapping[str, int], list[str]]:
     quiet: list[Finding] = []
     broken = board.audit is None
-    cases = [_Case("netlist", errors=[board.error])] if broken else list(_cases(board, quiet))
+    cases = [_Case("netlist", errors=[board.error])] if broken else list(_cases(board, batch, quiet))
     counts = {
         "tests": len(cases),
         "failures": sum(1 for c in cases if c.failures and not c.errors),
@@ -69,7 +70,7 @@ def _suite(board: BoardResult, number: int, batch: Batch) -> tuple[Mapping[str, 
     return counts, lines
 
 
-def _cases(board: BoardResult, quiet: list[Finding]) -> Iterable[_Case]:
+def _cases(board: BoardResult, batch: Batch, quiet: list[Finding]) -> Iterable[_Case]:
     """Parts, then expectations, then the board itself; findings that do not count go to ``quiet``."""
     audit = board.audit
     assert audit is not None
@@ -80,7 +81,7 @@ def _cases(board: BoardResult, quiet: list[Finding]) -> Iterable[_Case]:
         if name in parts:
             parts[name].skipped = f"not audited: {why}"
     for finding in audit.findings:
-        if not board.counts(finding):
+        if not batch.counts(board, finding):
             quiet.append(finding)
             continue
         expected = wanted.get((finding.file or "", finding.line or 0)) if finding.rule == "expect/missed" else None

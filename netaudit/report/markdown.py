@@ -9,8 +9,10 @@ import re
 from collections.abc import Iterable, Sequence
 
 from netaudit.audit.batch import Batch
+from netaudit.audit.compared import STATES, Change, Comparison
 from netaudit.failure import printable
 from netaudit.finding import Finding, rank
+from netaudit.report.compare_text import counted, part_text, ratio
 from netaudit.report.provenance import CAUTION, policies
 
 _ROWS = 15
@@ -27,17 +29,50 @@ Row = tuple[str, Finding]
 
 def render(batch: Batch) -> str:
     """The comment, below the length that hosts take."""
+    if batch.comparison is not None:
+        return _compared(batch, batch.comparison)
     rows = [(board.name, f) for board, audit in batch.audited for f in audit.findings]
     rows += [(f.file or "", f) for f in batch.findings]
     rows.sort(key=lambda row: (row[1].waived is not None, -rank(row[1].level), -(row[1].ratio or 0.0)))
     loud = [row for row in rows if row[1].level != "note" and row[1].waived is None]
     text = "\n".join([*_headline(batch, rows), "", *table(loud[:_ROWS], len(batch.boards) > 1), *_broken(batch)])
     rest = [row for row in rows if row not in loud[:_ROWS]]
-    for folded in (_folded(f"{len(rest)} more: notes, waived and smaller ones", rest, batch), _made_from(batch)):
-        joined = "\n".join(["", *folded])
+    return _closed(text, [_folded(f"{len(rest)} more: notes, waived and smaller ones", rest, batch)], batch)
+
+
+def _closed(text: str, folded: Sequence[Iterable[str]], batch: Batch) -> str:
+    """The comment with what is folded, as far as it fits, and by what it was made."""
+    for lines in (*folded, _made_from(batch)):
+        joined = "\n".join(["", *lines])
         if len(text) + len(joined) < _MOST:
             text += joined
     return f"{text}\n\n{CAUTION}\n\nnetaudit {batch.version}, policy {plain(policies(batch))}\n"
+
+
+def _compared(batch: Batch, comparison: Comparison) -> str:
+    """What a change made of the findings: what counts in a table, the rest folded."""
+    loud = [c for c in (*comparison.of("new"), *comparison.of("worse")) if c.blocks or c.finding.level != "note"]
+    rest = [c for state in STATES for c in comparison.of(state) if not any(c is other for other in loud[:_ROWS])]
+    lines = [f"### netaudit: {'FAIL' if batch.failed else 'PASS'}: {counted(comparison)}", ""]
+    lines.append(f"{plain(comparison.base)} against {plain(comparison.head)}; only what is new or worse counts.")
+    lines += ["", *(_changes(loud[:_ROWS]) if loud else ["Nothing is new or worse at warning or above."])]
+    own = [f"- {plain(f.message)}" for f in (*comparison.own, *batch.findings)]
+    lines += [*(["", *own] if own else []), *_broken(batch)]
+    parts = [plain(part_text(p)) for p in comparison.difference.parts]
+    folded = [
+        fold(f"{len(rest)} more findings", _changes(rest[:_FOLDED])) if rest else [],
+        fold(f"{len(parts)} parts changed", [f"- {p}" for p in parts[:_FOLDED]]) if parts else [],
+    ]
+    return _closed("\n".join(lines), folded, batch)
+
+
+def _changes(changes: Sequence[Change]) -> list[str]:
+    lines = ["| | level | part | rule | ratio | what |", "| --- | --- | --- | --- | --- | --- |"]
+    for c in changes:
+        where = f"{plain(c.board)}: {plain(c.finding.device or c.finding.net or '')}"
+        cells = (c.state, c.finding.level, where, plain(c.finding.rule), plain(ratio(c)), sentence(c.finding))
+        lines.append(f"| {' | '.join(cells)} |")
+    return lines
 
 
 def _headline(batch: Batch, rows: Sequence[Row]) -> list[str]:

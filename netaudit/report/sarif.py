@@ -10,6 +10,7 @@ from collections.abc import Iterable, Mapping, Sequence
 from typing import Any
 
 from netaudit.audit.batch import Batch, BoardResult
+from netaudit.audit.compared import Change, State
 from netaudit.audit.identity import fingerprints
 from netaudit.audit.records import Audit
 from netaudit.audit.rules import PAGES, RULES
@@ -21,6 +22,9 @@ _SCHEMA = "https://docs.oasis-open.org/sarif/sarif/v2.1.0/errata01/os/schemas/sa
 #: what one large host takes of a run; what is beyond it is counted in a notification
 MOST_RESULTS = 25_000
 _ROOT = "%SRCROOT%"
+_BASELINE: Mapping[State, str] = {
+    "new": "new", "worse": "updated", "better": "updated", "unchanged": "unchanged", "mended": "absent",
+}  # fmt: skip
 
 Result = dict[str, Any]
 
@@ -33,10 +37,13 @@ def render(batch: Batch) -> str:
 def log(batch: Batch) -> dict[str, Any]:
     """The log as plain values."""
     found = [(f, r) for board, audit in batch.audited for f, r in _results(board, audit)]
-    found += _project(batch)
+    found += [*_project(batch), *_mended(batch)]
     # the order of the sort key keeps the order of boards among equals
     found.sort(key=lambda pair: (pair[0].waived is not None, -rank(pair[0].level)))
     kept = found[:MOST_RESULTS]
+    states = {id(c.finding): _BASELINE[c.state] for c in _changes(batch)}
+    for finding, result in kept if batch.comparison is not None else ():
+        result["baselineState"] = states.get(id(finding), "new")
     rules = sorted({f.rule for f, _ in kept})
     index = {name: k for k, name in enumerate(rules)}
     for finding, result in kept:
@@ -94,9 +101,22 @@ def _results(board: BoardResult, audit: Audit) -> Iterable[tuple[Finding, Result
 
 
 def _project(batch: Batch) -> Iterable[tuple[Finding, Result]]:
-    """Findings that belong to no board."""
-    for finding, mark in zip(batch.findings, fingerprints(batch.findings, ()), strict=True):
+    """Findings that belong to no board, and those of the gate that no other finding stands behind."""
+    findings = (*batch.findings, *(batch.comparison.own if batch.comparison is not None else ()))
+    for finding, mark in zip(findings, fingerprints(findings, ()), strict=True):
         yield finding, _result("", finding, mark)
+
+
+def _changes(batch: Batch) -> Iterable[Change]:
+    return batch.comparison.difference.changes if batch.comparison is not None else ()
+
+
+def _mended(batch: Batch) -> Iterable[tuple[Finding, Result]]:
+    """Findings of the base that are gone."""
+    gone = [change for change in _changes(batch) if change.state == "mended"]
+    marks = fingerprints([change.finding for change in gone], ())
+    for change, mark in zip(gone, marks, strict=True):
+        yield change.finding, _result(change.board, change.finding, mark)
 
 
 def _result(board: str, finding: Finding, mark: str) -> Result:

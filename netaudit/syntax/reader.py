@@ -30,6 +30,9 @@ from netaudit.syntax.statements import (
 LARGEST_FILE = 64 << 20
 #: 200,000 parts with a dozen properties each
 LARGEST_EXPORT = 128 << 20
+#: how a file begins that stands in a repository for a large one (Git LFS specification, pointer file, version 1)
+POINTER = b"version https://git-lfs.github.com/spec/v1\n"
+_FETCH = "fetch its content first: git lfs pull"
 _EXPORTS = (".edf", ".edn", ".edif", ".csv")
 
 
@@ -85,6 +88,8 @@ def read_bytes(path: str, shown: str, place: Place | None, most: int = LARGEST_F
         raise InputError(f"{named} cannot be read: {reason}", place=place, mend=mend) from None
     if len(data) > most:
         raise InputError(f"{named} is too large", place=place, mend=f"at most {most >> 20} MiB are read")
+    if data.startswith(POINTER):
+        raise InputError(f"{named} only points at a large file kept elsewhere", place=place, mend=_FETCH)
     return data
 
 
