@@ -94,10 +94,12 @@ def state_of(before: Finding, now: Finding, step: float) -> State:
         return "worse" if rank(now.level) > rank(before.level) else "better"
     if before.waived is not None and now.waived is None:
         return "worse"
+    if (before.ratio is None) != (now.ratio is None):
+        # without a ratio the limit is 0: anything is beyond it
+        return "worse" if now.ratio is None else "better"
     old, new = _size(before), _size(now)
     if old is None or new is None:
-        # a ratio that is gone has a limit of 0 now
-        return "worse" if new is None and old is not None and now.limit == 0.0 else "unchanged"
+        return "unchanged"
     if new > old * (1.0 + step) + 1e-12:
         return "worse"
     return "better" if new < old * (1.0 - _NOISE) else "unchanged"
@@ -199,7 +201,7 @@ def _worse(change: Change) -> Finding:
     if before is None:
         said = "was not there"
     elif before.ratio is not None and change.finding.ratio is not None:
-        said = f"{change.finding.ratio * 100:.3g} % of its limit, {before.ratio * 100:.3g} % in the base"
+        said = f"{change.finding.ratio * 100:.4g} % of its limit, {before.ratio * 100:.4g} % in the base"
     else:
         said = f"{change.finding.level} now, {before.level} in the base"
     return replace(

@@ -16,6 +16,12 @@ from netaudit.syntax.suggest import closest
 _QUIET = {"LC_ALL": "C", "GIT_OPTIONAL_LOCKS": "0", "GIT_TERMINAL_PROMPT": "0", "GIT_NO_LAZY_FETCH": "1"}
 
 
+def _environment() -> dict[str, str]:
+    """A hook's environment points at its own repository, which would hide the one of the folder."""
+    own = ("GIT_DIR", "GIT_WORK_TREE", "GIT_INDEX_FILE", "GIT_PREFIX", "GIT_COMMON_DIR", "GIT_NAMESPACE")
+    return {**{k: v for k, v in os.environ.items() if k not in own}, **_QUIET}
+
+
 @dataclass(frozen=True)
 class Entry:
     """An entry of a tree: ``mode`` 100644, 100755, 120000 (a link) or 160000 (a submodule's commit)."""
@@ -36,7 +42,7 @@ class Repository:
         try:
             done = subprocess.run(
                 ["git", "-C", self.folder, *arguments],
-                input=data, capture_output=True, check=False, env={**os.environ, **_QUIET},
+                input=data, capture_output=True, check=False, env=_environment(),
             )  # fmt: skip
         except OSError as error:
             raise InputError(f"git cannot be run: {error.strerror}", mend="install git, or compare folders") from None

@@ -16,7 +16,7 @@ from netaudit.gate.git import Repository
 from netaudit.gate.saved import read_saved
 from netaudit.project.globs import matching, named_files
 from netaudit.project.project import FILE_NAME, Project
-from netaudit.project.read import project_at
+from netaudit.project.read import find_project, project_at
 from netaudit.project.starter import look_around
 
 _NETLISTS = (".netlist", ".net", ".nl", ".txt")
@@ -77,6 +77,9 @@ def open_side(text: str, stack: ExitStack, fail_on: Level, like: Side | None = N
 def _folder(text: str, like: Side | None) -> Side:
     folder = os.path.normpath(text)
     project = project_at(folder)
+    if project is None and os.path.samefile(folder, os.curdir) and (project := find_project(folder)) is not None:
+        # the current folder stands for the project that it lies in, as for a revision
+        folder = project.folder
     return Side(text, folder, project, _boards(folder, project, like))
 
 

@@ -18,7 +18,7 @@ def compare_text(batch: Batch, style: Style, notes: bool) -> str:
     """The report of ``compare``; notes that count for nothing are left to ``--notes``."""
     comparison = batch.comparison
     assert comparison is not None
-    head = [style.verdict(batch.failed), printable(f"{comparison.base} against {comparison.head}"), counted(comparison)]
+    head = [style.verdict(batch.failed), printable(f"{comparison.base} -> {comparison.head}"), counted(comparison)]
     lines = [*flow(head, style.width), ""]
     for board in (b for b in batch.boards if b.audit is None):
         lines += [
@@ -42,12 +42,12 @@ def counted(comparison: Comparison) -> str:
 
 
 def ratio(change: Change) -> str:
-    """``131 % of its limit, 112 % before``; empty where there is no ratio."""
+    """``131.2 % of its limit, 112 % before``; empty where there is no ratio."""
     now, before = change.finding.ratio, change.before.ratio if change.before is not None else None
     if now is None:
         return ""
-    was = f", {before * 100:.3g} % before" if before is not None else ""
-    return f"{now * 100:.3g} % of its limit{was}"
+    was = f", {before * 100:.4g} % before" if before is not None else ""
+    return f"{now * 100:.4g} % of its limit{was}"
 
 
 def _changes(changes: Sequence[Change], style: Style, notes: bool) -> Iterable[str]:

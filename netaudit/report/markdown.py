@@ -54,7 +54,7 @@ def _compared(batch: Batch, comparison: Comparison) -> str:
     loud = [c for c in (*comparison.of("new"), *comparison.of("worse")) if c.blocks or c.finding.level != "note"]
     rest = [c for state in STATES for c in comparison.of(state) if not any(c is other for other in loud[:_ROWS])]
     lines = [f"### netaudit: {'FAIL' if batch.failed else 'PASS'}: {counted(comparison)}", ""]
-    lines.append(f"{plain(comparison.base)} against {plain(comparison.head)}; only what is new or worse counts.")
+    lines.append(f"From {plain(comparison.base)} to {plain(comparison.head)}; only what is new or worse counts.")
     lines += ["", *(_changes(loud[:_ROWS]) if loud else ["Nothing is new or worse at warning or above."])]
     own = [f"- {plain(f.message)}" for f in (*comparison.own, *batch.findings)]
     lines += [*(["", *own] if own else []), *_broken(batch)]
