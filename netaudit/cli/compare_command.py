@@ -11,6 +11,7 @@ from netaudit import __version__
 from netaudit.cli.common import FLAG, add_fail_on, complain, deliver
 from netaudit.cli.reports import add_reports, wanted, write_reports
 from netaudit.cli.settings import add_cache, fail_on, nominal, policy_name, require_complete, workers_of
+from netaudit.cli.work import add_workers, at_work
 from netaudit.failure import InputError
 from netaudit.project.project import Project, Steps
 from netaudit.project.read import find_project
@@ -50,6 +51,7 @@ def add(commands: Any) -> None:
         help="the same for stresses inside their limits (default: they are only listed)",
     )
     add_cache(command)
+    add_workers(command)
     command.set_defaults(run=run)
 
 
@@ -85,9 +87,10 @@ def _compared(options: argparse.Namespace, base: Side, head: Side) -> Batch:
     load_policy(policy)
     settings = Settings(
         policy, nominal(options, project), None, fail_on(options, project), require_complete(options, project),
-        workers_of(options, project), _cache(options),
+        _cache(options),
     )  # fmt: skip
-    sides = audited(base, head, settings)
+    with at_work(workers_of(options, project), options.cluster) as workers:
+        sides = audited(base, head, settings, workers)
     lost = homeless(read_waivers(head.project), head.boards) if head.project is not None else ()
     return Batch(
         tuple(sides.head), __version__, lost, compare(sides, _steps(options, project), settings.require_complete)

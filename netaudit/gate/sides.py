@@ -19,6 +19,7 @@ from netaudit.gate.job import Job, Verdict
 from netaudit.gate.run import run_jobs
 from netaudit.gate.side import Side
 from netaudit.gate.waivers import read_waivers
+from netaudit.workers import IN_PROCESS, Workers
 
 
 @dataclass(frozen=True)
@@ -30,25 +31,27 @@ class Settings:
     plan: Plan | None = None
     fail_on: Level = "error"
     require_complete: bool = False
-    workers: int = 1
     cache: str | None = None
 
 
-def audited(base: Side, head: Side, settings: Settings) -> Sides:
-    """The boards of both sides.  A board that both have alike is solved once."""
+def audited(base: Side, head: Side, settings: Settings, workers: Workers = IN_PROCESS) -> Sides:
+    """The boards of both sides.  A board that both have alike is solved once.
+
+    Raises KeyboardInterrupt when the workers were told to stop: half a comparison says nothing.
+    """
     with ExitStack() as stack:
         folder = settings.cache
         if folder is None:
             folder = stack.enter_context(tempfile.TemporaryDirectory(prefix="netaudit-"))
         cache = Cache(folder)
-        heads = _results(head, base, settings, cache)
-        bases = _results(base, head, settings, cache)
+        heads = _results(head, base, settings, cache, workers)
+        bases = _results(base, head, settings, cache, workers)
     return Sides(
         base.name, bases, head.name, heads, (*base.remarks, *head.remarks, *_other_policies(base, head, settings))
     )
 
 
-def _results(side: Side, other: Side, settings: Settings, cache: Cache) -> tuple[BoardResult, ...]:
+def _results(side: Side, other: Side, settings: Settings, cache: Cache, workers: Workers) -> tuple[BoardResult, ...]:
     if side.saved is not None:
         return side.saved
     prefixes = (side.prefix, *([other.prefix] if other.saved is None else []))
@@ -61,8 +64,11 @@ def _results(side: Side, other: Side, settings: Settings, cache: Cache) -> tuple
         )
         for name in side.boards
     ]  # fmt: skip
-    results = run_jobs([j for j in jobs if j.verdict.board not in side.broken], cache, workers=settings.workers)
-    return tuple(_broken(job, side) if job.verdict.board in side.broken else next(results) for job in jobs)
+    results = run_jobs([j for j in jobs if j.verdict.board not in side.broken], cache, workers=workers)
+    every = tuple(_broken(job, side) if job.verdict.board in side.broken else next(results) for job in jobs)
+    if any(r.interrupted or (r.audit is not None and r.audit.partial) for r in every):
+        raise KeyboardInterrupt
+    return every
 
 
 def _broken(job: Job, side: Side) -> BoardResult:
