@@ -42,12 +42,10 @@ def add(commands: Any) -> None:
     command.add_argument("--policy", metavar="NAME|FILE", help="share of each rating that may be used, on both sides")
     command.add_argument("--nominal", action=FLAG, help="nominal values only, on both sides (default: worst case)")
     command.add_argument("--require-complete", action=FLAG, help="fail when something of the head could not be audited")
-    command.add_argument(
-        "--step", metavar="5%%", help="by how much of itself a finding's ratio may rise (default: 5%%)"
-    )
+    command.add_argument("--step", metavar="5%", help="by how much of itself a finding's ratio may rise (default: 5%%)")
     command.add_argument(
         "--stress-step",
-        metavar="20%%",
+        metavar="20%",
         help="the same for stresses inside their limits (default: they are only listed)",
     )
     add_cache(command)
