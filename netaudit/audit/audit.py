@@ -244,7 +244,8 @@ def _explore(
     """All checks and tasks of a mode in one exploration."""
     out.units |= {v.key: v.quantity.unit for v in explorer.spans}
     objectives = [item.objectives() for item in items]
-    extremes = explorer.extremes([*(o for some in objectives for o in some), *(task.objective for task in tasks)])
+    sized = [o for some in objectives for o in some]
+    extremes = explorer.extremes([*sized, *(task.objective for task in tasks)], len(sized))
     out.cut |= explorer.cut
     nominal: Solved = explorer.boards[0].pick(0)
     left = iter(extremes)

@@ -95,6 +95,7 @@ class Explorer:
         self.known: dict[bytes, int] = {self.middle.tobytes(): 0}
         self._columns: list[Array] = []
         self._picked: dict[int, Solved] = {}
+        self._sized = 0
         self._slopes: dict[int, Array] = {}
         #: which values each objective was seen to depend on, at any row looked at: (objectives, variables)
         self._many = len(self.spans) > _MANY
@@ -106,8 +107,9 @@ class Explorer:
         #: whether the exploration was interrupted: extremes are then those of what was solved so far
         self.cut = False
 
-    def extremes(self, objectives: Sequence[Objective]) -> list[Extreme]:
-        """The largest value of each objective over the box."""
+    def extremes(self, objectives: Sequence[Objective], sized: int | None = None) -> list[Extreme]:
+        """The largest value of each objective over the box; of those from ``sized`` on only the sign matters."""
+        self._sized = len(objectives) if sized is None else sized
         if not objectives:
             return []
         self._columns, self._slopes = [], {}
@@ -187,15 +189,21 @@ class Explorer:
         best = best.copy()
         for _ in range(3):
             gradients = self._gradients(objectives, sorted(set(best.tolist())))
+            before = self._table(objectives)[best, np.arange(len(objectives))]
             todo = {k: self._inward(gradients[int(best[k])][k], int(best[k])) for k in range(len(objectives))}
+            todo = {k: cs for k, cs in todo.items() if self._worth(k, float(before[k]), gradients[int(best[k])][k][cs])}
             if not any(todo.values()):
                 return
-            before = self._table(objectives)[best, np.arange(len(objectives))]
             for turn in range(max(len(columns) for columns in todo.values())):
                 self._zoom(objectives, best, {k: cs[turn] for k, cs in todo.items() if turn < len(cs)})
             after = self._table(objectives)[best, np.arange(len(objectives))]
             if not (after > before * (1 + 1e-9 * np.sign(before))).any():
                 return
+
+    def _worth(self, k: int, value: float, gradient: Array) -> bool:
+        """Whether a search may matter: of an objective that is judged by its sign only where ten times what the slopes
+        promise over the whole spans would reach 0."""
+        return k < self._sized or value + 10.0 * float(np.abs(gradient).sum()) / SHARE > 0.0
 
     def _inward(self, gradient: Array, row: int) -> list[int]:
         """The values whose sensitivity points into the box, the most influential ones first."""
